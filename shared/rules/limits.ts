@@ -15,7 +15,7 @@ export const SSID_MAX_OCTETS = 32;
 export const WORDS_MIN = 5;
 /** Most words: 8 of mean length 7 with separators still fit 63 characters about every second draw. */
 export const WORDS_MAX = 8;
-/** Least strength of anything Quayword generates, in bits. OWASP ASVS 5.0 11.5.1 asks for 128 only of keys; 64 is this project's floor. */
+/** Least strength of anything Quayword generates, in bits. Project's own floor (common practice, no source). */
 export const GENERATED_BITS_MIN = 64;
 /** Range a network's policy may ask for, in bits. The upper end is what eight words give (common practice, no source). */
 export const POLICY_BITS_MIN = 47;
