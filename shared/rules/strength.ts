@@ -90,7 +90,7 @@ export function verdict(input: { security: WifiSecurity; ageLimitDays?: number }
     bits,
     attack,
     averageSeconds,
-    words: `${timeInWords(averageSeconds)} for ${who}`,
+    words: `${timeInWords(averageSeconds)}${beyond ? ', even' : ' for'} ${who}`,
     why: WHY[input.security],
   };
 }
