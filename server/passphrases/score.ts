@@ -36,6 +36,12 @@ export class Scorer {
   private current: Question | undefined;
   private timer: NodeJS.Timeout | undefined;
   private readonly waiting: Question[] = [];
+  private readonly patience: number;
+
+  /** @param patience milliseconds one answer may take before the worker is replaced. */
+  constructor(patience = PATIENCE_MS) {
+    this.patience = patience;
+  }
 
   /**
    * @param context the vessel's own words, most telling first; see {@link contextWords}.
@@ -82,7 +88,7 @@ export class Scorer {
     this.current = question;
     this.worker ??= this.start();
     this.worker.ref();
-    this.timer = setTimeout(() => this.lose(), PATIENCE_MS);
+    this.timer = setTimeout(() => this.lose(), this.patience);
     this.worker.postMessage({ passphrase: question.passphrase, context: question.context });
   }
 

@@ -52,6 +52,10 @@ describe('guesses', () => {
     },
   );
 
+  test('letters swapped for signs are still seen through', async () => {
+    expect((await scoreTyped('p@ssw0rd1', [])).guesses).toBeLessThan(1000);
+  });
+
   test('nothing typed is one guess', async () => {
     expect(await scoreTyped('', [])).toEqual({ guesses: 1, bits: 0 });
   });
@@ -117,6 +121,13 @@ describe('the worker', () => {
     await expect(broken).rejects.toThrow('The strength check stopped. Try again.');
     expect((await waiting).guesses).toBe(4);
     expect(scorer.threadId).not.toBe(first);
+    await scorer.close();
+  });
+
+  test('one that takes too long is ended and the question refused', async () => {
+    const scorer = new Scorer(1); // loading the dictionaries alone takes hundreds of milliseconds
+    await expect(scorer.score('12345678', [])).rejects.toThrow('The strength check stopped. Try again.');
+    expect(scorer.threadId).toBeUndefined();
     await scorer.close();
   });
 

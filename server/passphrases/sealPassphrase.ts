@@ -1,0 +1,113 @@
+import { randomUUID } from 'node:crypto';
+import type { Tx } from '../db/connection.ts';
+import type { Place } from '../db/vault.ts';
+import { AppError } from '../errors.ts';
+import type { Services } from '../services.ts';
+
+export interface NewPassphrase {
+  readonly vesselId: string;
+  readonly networkId: string;
+  readonly passphrase: string;
+  readonly origin: 'generated' | 'typed';
+  /** log2 of the equally likely draws, or of the guesses needed. */
+  readonly bits: number;
+  readonly now: Date;
+}
+
+export const secretPlace = (row: {
+  id: string;
+  vesselId: string;
+  networkId: string;
+  generation: number;
+}): Place => ({
+  table: 'passphrase_secrets',
+  column: 'sealed',
+  rowId: row.id,
+  vesselId: row.vesselId,
+  networkId: row.networkId,
+  generation: row.generation,
+});
+
+/**
+ * Stores a passphrase sealed, as the network's next generation; it is not live yet. Throws `reused` when the
+ * vessel had the same passphrase before, found by its keyed fingerprint without opening anything.
+ */
+export async function sealPassphrase(services: Services, tx: Tx, given: NewPassphrase): Promise<string> {
+  const { db, vault } = services;
+  const fingerprint = vault.fingerprint(given.vesselId, given.passphrase);
+  const seen = await db.row(
+    tx,
+    'SELECT 1 FROM passphrase_secrets WHERE vessel_id = $vessel AND fingerprint = $fingerprint',
+    { vessel: given.vesselId, fingerprint },
+  );
+  if (seen) {
+    throw new AppError(
+      'reused',
+      'This passphrase was used on this vessel before, so people who left may know it. Choose another.',
+      {
+        errors: { passphrase: ['Used on this vessel before. Choose another, or let Quayword make one.'] },
+      },
+    );
+  }
+  const [counted] = await db.run<{ last_generation: number }>(
+    tx,
+    'UPDATE networks SET last_generation = last_generation + 1 WHERE id = $network AND vessel_id = $vessel RETURNING last_generation',
+    { network: given.networkId, vessel: given.vesselId },
+  );
+  if (!counted) throw new AppError('not_found', 'There is no such network.');
+  const id = randomUUID();
+  const generation = counted.last_generation;
+  await db.run(
+    tx,
+    `INSERT INTO passphrases(id, vessel_id, network_id, generation, origin, bits, created_at)
+     VALUES ($id, $vessel, $network, $generation, $origin, $bits, $now)`,
+    {
+      id,
+      vessel: given.vesselId,
+      network: given.networkId,
+      generation,
+      origin: given.origin,
+      bits: given.bits,
+      now: given.now,
+    },
+  );
+  const { keyId, sealed } = vault.seal(
+    secretPlace({ id, vesselId: given.vesselId, networkId: given.networkId, generation }),
+    given.passphrase,
+  );
+  await db.run(
+    tx,
+    `INSERT INTO passphrase_secrets(passphrase_id, vessel_id, key_id, sealed, fingerprint)
+     VALUES ($id, $vessel, $keyId, $sealed, $fingerprint)`,
+    { id, vessel: given.vesselId, keyId, sealed, fingerprint },
+  );
+  return id;
+}
+
+/** Opens a passphrase. Callers are the few deliberate ways out, and each writes the log line first. */
+export async function openPassphrase(services: Services, tx: Tx, passphraseId: string): Promise<string> {
+  const row = await services.db.row<{
+    id: string;
+    vessel_id: string;
+    network_id: string;
+    generation: number;
+    key_id: string;
+    sealed: Buffer | null;
+  }>(
+    tx,
+    `SELECT p.id, p.vessel_id, p.network_id, p.generation, s.key_id, s.sealed
+     FROM passphrases p JOIN passphrase_secrets s ON s.passphrase_id = p.id WHERE p.id = $id`,
+    { id: passphraseId },
+  );
+  if (!row) throw new AppError('not_found', 'There is no such passphrase.');
+  if (!row.sealed) throw new AppError('gone', 'That passphrase was retired and is no longer kept.');
+  return services.vault.open(
+    secretPlace({
+      id: row.id,
+      vesselId: row.vessel_id,
+      networkId: row.network_id,
+      generation: row.generation,
+    }),
+    { keyId: row.key_id, sealed: row.sealed },
+  );
+}
