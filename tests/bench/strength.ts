@@ -21,6 +21,7 @@ function hostileInputs(): Record<string, string> {
     'swapped letters, repeating': fill('p@ssw0rd'),
     'swapped letters, mixed': fill('4@8({[<369&#!1|0$5+7%2/\\'),
     'swapped letters, random': random('4@8({[<369&#!1|0$5+7%2aeiost'),
+    'letters of several signs': random('|<-/\\()[]{}_^~'),
     digits: random('0123456789'),
     dates: fill('13.11.1991-1.1.2001/'),
     'keyboard runs': fill('qwertyuiopasdfghjklzxcvbnm'),

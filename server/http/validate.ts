@@ -1,0 +1,42 @@
+import type { Request } from 'express';
+import type { z } from 'zod';
+import { AppError, notFound } from '../errors.ts';
+import type { AnyContract } from './endpoint.ts';
+
+/** A path that cannot name anything of ours names nothing. */
+export function parseParams(contract: AnyContract, request: Request): unknown {
+  if (!contract.params) return undefined;
+  const parsed = contract.params.safeParse(request.params);
+  if (!parsed.success) throw notFound();
+  return parsed.data;
+}
+
+export function parseQuery(contract: AnyContract, request: Request): unknown {
+  if (!contract.query) return undefined;
+  return check(contract.query, request.query);
+}
+
+export function parseBody(contract: AnyContract, request: Request): unknown {
+  if (!contract.body) return undefined;
+  return check(contract.body, request.body);
+}
+
+/** Every invalid field with what would be right, keyed by its path. */
+function check(schema: z.ZodType, value: unknown): unknown {
+  const parsed = schema.safeParse(value);
+  if (parsed.success) return parsed.data;
+  const errors: Record<string, string[]> = {};
+  for (const issue of parsed.error.issues) {
+    const keys =
+      issue.code === 'unrecognized_keys' ? issue.keys.map((name) => [...issue.path, name]) : [issue.path];
+    for (const path of keys) {
+      const key = path.map(String).join('.') || 'body';
+      const sentence =
+        issue.code === 'unrecognized_keys' ? 'This field is not known here; leave it out' : issue.message;
+      errors[key] = [...(errors[key] ?? []), sentence];
+    }
+  }
+  throw new AppError('invalid', 'Some of this needs correcting. Each field says what would be right.', {
+    errors,
+  });
+}

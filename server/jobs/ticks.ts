@@ -1,0 +1,36 @@
+import { schedule } from 'node-cron';
+import type { Services } from '../services.ts';
+
+/** What happens on the clock, by name; each finds work and does it once even on several servers. */
+const TICKS: Record<string, { cron: string; run: (services: Services) => Promise<unknown> }> = {};
+
+export interface Ticks {
+  stop(): Promise<void>;
+}
+
+/** Runs every tick once now (work that came due while the server was down), then on its schedule. */
+export function startTicks(services: Services): Ticks {
+  const running = new Set<Promise<void>>();
+  const run = (name: string, work: (services: Services) => Promise<unknown>) => {
+    const one: Promise<void> = work(services).then(
+      () => undefined,
+      (error: unknown) =>
+        services.log.error(
+          { tick: name, error: error instanceof Error ? error.name : 'unknown' },
+          'tick failed',
+        ),
+    );
+    running.add(one);
+    void one.finally(() => running.delete(one));
+  };
+  const tasks = Object.entries(TICKS).map(([name, tick]) => {
+    run(name, tick.run);
+    return schedule(tick.cron, () => run(name, tick.run), { name, noOverlap: true });
+  });
+  return {
+    stop: async () => {
+      for (const task of tasks) await task.destroy();
+      await Promise.all(running);
+    },
+  };
+}

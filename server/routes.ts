@@ -1,0 +1,5 @@
+import { sessionRoutes } from './auth/sessionRoutes.ts';
+import type { Endpoint } from './http/endpoint.ts';
+
+/** Every route of the server: the only list, from which the OpenAPI document and the permission test are made. */
+export const endpoints: readonly Endpoint[] = [...sessionRoutes];
