@@ -6,6 +6,8 @@ import {
   ScoreUnavailable,
   scoreTyped,
 } from '../../../server/passphrases/score.ts';
+import { strongEnough } from '../../../shared/rules/strength.ts';
+import { WIFI_SECURITIES } from '../../../shared/rules/wifi.ts';
 
 afterAll(closeScorer);
 
@@ -55,6 +57,15 @@ describe('guesses', () => {
   test('letters swapped for signs are still seen through', async () => {
     expect((await scoreTyped('p@ssw0rd1', [])).guesses).toBeLessThan(1000);
   });
+
+  test.each(['Tamarisk', 'MYTamarisk', 'tamarisk-guests', 'Tamarisk2026', 'Brandvold1!'])(
+    'R20: %s is not strong enough for any network of that boat',
+    async (typed) => {
+      const context = contextWords(['M/Y Tamarisk', 'Tamarisk Guests', 'Ingrid Brandvold', 'Split']);
+      const score = await scoreTyped(typed, context);
+      for (const security of WIFI_SECURITIES) expect(strongEnough(0, security, score)).toBe(false);
+    },
+  );
 
   test('nothing typed is one guess', async () => {
     expect(await scoreTyped('', [])).toEqual({ guesses: 1, bits: 0 });
