@@ -1,18 +1,16 @@
-import type { ReactNode } from 'react';
 import { Link } from 'react-router-dom';
 import type { SessionView } from '../../shared/api/session.ts';
 import { Button } from '../components/Button.tsx';
 import { Disclosure } from '../components/Disclosure.tsx';
 import { SafeText } from '../components/SafeText.tsx';
 import { ThemeSwitch } from '../components/ThemeSwitch.tsx';
-import { firstPlace, vesselPlaces } from './places.ts';
 import { useSignOut } from './useSignOut.ts';
 
 interface AccountMenuProps {
   session: SessionView;
   /** The role in which the person is here ("Purser"). */
   role: string;
-  /** The vessel whose page this is, left out of the list of others. */
+  /** The vessel whose page this is, if it is one's. */
   vesselId?: string | undefined;
 }
 
@@ -37,7 +35,11 @@ export function AccountMenu({ session, role, vesselId }: AccountMenuProps) {
     >
       {(close) => (
         <div className="flex flex-col gap-4 text-left">
-          <Places session={session} vesselId={vesselId} close={close} />
+          {session.dealer && vesselId ? (
+            <Link to="/fleet" onClick={close} className={ITEM}>
+              The fleet
+            </Link>
+          ) : null}
           <Link to="/account" onClick={close} className={ITEM}>
             Your account
           </Link>
@@ -51,43 +53,5 @@ export function AccountMenu({ session, role, vesselId }: AccountMenuProps) {
         </div>
       )}
     </Disclosure>
-  );
-}
-
-function Places({
-  session,
-  vesselId,
-  close,
-}: {
-  session: SessionView;
-  vesselId?: string | undefined;
-  close: () => void;
-}) {
-  const others = session.memberships.filter((membership) => membership.vesselId !== vesselId);
-  const items: ReactNode[] = others.map(({ vesselId: id, vesselName, roles }) => {
-    const first = vesselPlaces(id, roles)[0];
-    return first ? (
-      <li key={id}>
-        <Link to={first.to} onClick={close} className={ITEM}>
-          <SafeText>{vesselName}</SafeText>
-        </Link>
-      </li>
-    ) : null;
-  });
-  if (session.dealer && vesselId) {
-    items.push(
-      <li key="fleet">
-        <Link to={firstPlace(session)} onClick={close} className={ITEM}>
-          The fleet of <SafeText>{session.dealer.name}</SafeText>
-        </Link>
-      </li>,
-    );
-  }
-  if (items.length === 0) return null;
-  return (
-    <div>
-      <p className="px-2 text-sm text-soft">Go to</p>
-      <ul className="max-h-64 overflow-y-auto">{items}</ul>
-    </div>
   );
 }

@@ -3,8 +3,8 @@ import { type LoaderFunctionArgs, redirect, replace } from 'react-router-dom';
 import { sessionQuery } from '../features/auth/queries.ts';
 import { ApiError } from '../lib/errors.ts';
 import { queryClient } from '../lib/queryClient.ts';
+import { rememberPlace } from '../lib/rememberedPlace.ts';
 import { firstPlace } from './places.ts';
-import { rememberPlace } from './signedOut.ts';
 
 /** Lets only signed-in people further; others sign in and come back to where they were going. */
 export async function sessionLoader({ request }: LoaderFunctionArgs) {

@@ -1,20 +1,7 @@
 import { keepCsrf } from '../lib/api.ts';
 import { queryClient } from '../lib/queryClient.ts';
 
-let wanted: string | null = null;
 const tabs = new BroadcastChannel('quayword.session');
-
-/** Remembers, in this tab only, where somebody was going before they had to sign in. */
-export function rememberPlace(path: string): void {
-  wanted = path;
-}
-
-/** Where to go after signing in, once. Only ever an address this app itself was on. */
-export function takeRememberedPlace(): string {
-  const place = wanted ?? '/';
-  wanted = null;
-  return place;
-}
 
 /**
  * Goes to the sign-in page and forgets everything fetched for the person who was signed in. In this order: the page

@@ -1,4 +1,4 @@
-import { QueryClient } from '@tanstack/react-query';
+import { type FetchQueryOptions, QueryClient, type QueryKey } from '@tanstack/react-query';
 import { AwayError } from './errors.ts';
 import { whenServerReturns } from './serverState.ts';
 
@@ -22,8 +22,7 @@ export const queryClient = new QueryClient({
 
 whenServerReturns(() => void queryClient.invalidateQueries());
 
-/** Starts a page's loads together, without waiting: the page shows how far each has come. */
-export function startLoads(...queries: readonly Parameters<QueryClient['prefetchQuery']>[0][]): null {
-  for (const query of queries) void queryClient.prefetchQuery(query);
-  return null;
+/** Starts a load without waiting for it: a page's loader starts all of its loads, and the page shows how far each is. */
+export function startLoad<T, E, D, K extends QueryKey>(query: FetchQueryOptions<T, E, D, K>): void {
+  void queryClient.prefetchQuery(query);
 }

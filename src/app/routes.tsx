@@ -1,0 +1,70 @@
+import type { RouteObject } from 'react-router-dom';
+import { FirstLoad } from './FirstLoad.tsx';
+import { Root } from './Root.tsx';
+import { NotFound, RouteError } from './RouteError.tsx';
+import { firstPlaceLoader, sessionLoader } from './session.ts';
+
+const vesselPages: RouteObject[] = [];
+
+const fleetPages: RouteObject[] = [];
+
+/** Every address of the client, and nothing else: the only place that knows all pages. */
+export const routes: RouteObject[] = [
+  {
+    Component: Root,
+    ErrorBoundary: RouteError,
+    HydrateFallback: FirstLoad,
+    children: [
+      {
+        path: 'sign-in',
+        lazy: async () => ({ Component: (await import('../pages/SignInPage.tsx')).SignInPage }),
+      },
+      {
+        path: 'reset',
+        lazy: async () => ({ Component: (await import('../pages/ResetRequestPage.tsx')).ResetRequestPage }),
+      },
+      {
+        path: 'reset/new',
+        lazy: async () => ({ Component: (await import('../pages/ResetPage.tsx')).ResetPage }),
+      },
+      {
+        path: 'invitation',
+        lazy: async () => ({ Component: (await import('../pages/InvitationPage.tsx')).InvitationPage }),
+      },
+      {
+        loader: sessionLoader,
+        ErrorBoundary: RouteError,
+        children: [
+          { index: true, loader: firstPlaceLoader, Component: FirstLoad },
+          {
+            path: 'account',
+            lazy: async () => ({ Component: (await import('./AccountShell.tsx')).AccountShell }),
+            children: [
+              {
+                index: true,
+                lazy: async () => {
+                  const { AccountPage, accountLoader } = await import('../pages/AccountPage.tsx');
+                  return { Component: AccountPage, loader: accountLoader };
+                },
+              },
+            ],
+          },
+          {
+            path: 'vessels/:vesselId',
+            lazy: async () => {
+              const { VesselShell, vesselLoader } = await import('./VesselShell.tsx');
+              return { Component: VesselShell, loader: vesselLoader };
+            },
+            children: vesselPages,
+          },
+          {
+            path: 'fleet',
+            lazy: async () => ({ Component: (await import('./DealerShell.tsx')).DealerShell }),
+            children: fleetPages,
+          },
+        ],
+      },
+      { path: '*', Component: NotFound },
+    ],
+  },
+];
