@@ -2,7 +2,7 @@ import { randomBytes, randomUUID } from 'node:crypto';
 import { Writable } from 'node:stream';
 import type { Express } from 'express';
 import { pino } from 'pino';
-import { afterAll, beforeAll } from 'vitest';
+import { afterAll, afterEach, beforeAll } from 'vitest';
 import { createApp } from '../../server/app.ts';
 import { readConfig } from '../../server/config.ts';
 import { Database } from '../../server/db/connection.ts';
@@ -11,6 +11,7 @@ import { Vault } from '../../server/db/vault.ts';
 import { type Queue, startQueue } from '../../server/jobs/queue.ts';
 import type { Clock, Services } from '../../server/services.ts';
 import { testDatabase } from './database.ts';
+import { dumpHoldsNoSecret, oracles, type Recorded } from './oracles.ts';
 
 /** A clock that stands still until a test moves it, also backwards. */
 export class TestClock implements Clock {
@@ -36,6 +37,8 @@ export interface TestApp {
   /** Everything the server logged, as text. */
   readonly logged: () => string;
   readonly origin: string;
+  /** Every answer the server gave to a test's clients. */
+  readonly recorded: Recorded[];
 }
 
 export const testEnv = (appUrl: string): NodeJS.ProcessEnv => ({
@@ -80,9 +83,16 @@ export function useApp(): TestApp {
       appUrl,
       logged: () => lines,
       origin: config.publicUrl,
+      recorded: [],
     };
   });
+  afterEach(async () => {
+    if (!holder.app) return;
+    await oracles(holder.app, holder.app.recorded);
+    holder.app.recorded.length = 0;
+  });
   afterAll(async () => {
+    if (holder.app) await dumpHoldsNoSecret(holder.app);
     await holder.app?.queue.stop();
     await holder.app?.services.db.close();
   });

@@ -26,6 +26,17 @@ export class Client {
   }
 
   private dress(request: Test, changes: boolean): Test {
+    request.on('response', (response) => {
+      this.test.recorded.push({
+        sessionId: this.sessionId,
+        method: request.method,
+        path: request.url.replace(/^https?:\/\/[^/]+/, ''),
+        status: response.status,
+        text: Buffer.isBuffer(response.body)
+          ? response.body.toString('latin1')
+          : (response.text ?? JSON.stringify(response.body)),
+      });
+    });
     if (this.sessionId) request.set('Cookie', this.cookie());
     if (changes) {
       request

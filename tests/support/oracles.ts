@@ -1,0 +1,184 @@
+import { execFile } from 'node:child_process';
+import { promisify } from 'node:util';
+import { QueryTypes } from 'sequelize';
+import { expect } from 'vitest';
+import { secretPlace } from '../../server/passphrases/sealPassphrase.ts';
+import type { TestApp } from './app.ts';
+
+/** One answer of the server, kept to be searched for what must not be in it. */
+export interface Recorded {
+  readonly sessionId: string | null;
+  readonly method: string;
+  readonly path: string;
+  readonly status: number;
+  readonly text: string;
+}
+
+interface SecretRow {
+  id: string;
+  vessel_id: string;
+  network_id: string;
+  generation: number;
+  key_id: string;
+  sealed: Buffer;
+}
+
+/** Every passphrase the database holds, opened with the test's own keys: the markers nobody else may have. */
+async function markers(test: TestApp): Promise<string[]> {
+  const rows = await system<SecretRow>(
+    test,
+    `SELECT p.id, p.vessel_id, p.network_id, p.generation, s.key_id, s.sealed
+     FROM passphrases p JOIN passphrase_secrets s ON s.passphrase_id = p.id WHERE s.sealed IS NOT NULL`,
+  );
+  const texts: string[] = [];
+  for (const row of rows) {
+    // A test may have damaged a row on purpose (R21); such a row hides nothing.
+    try {
+      texts.push(
+        test.services.vault.open(
+          secretPlace({
+            id: row.id,
+            vesselId: row.vessel_id,
+            networkId: row.network_id,
+            generation: row.generation,
+          }),
+          { keyId: row.key_id, sealed: row.sealed },
+        ),
+      );
+    } catch {}
+  }
+  // Shorter ones are words that logs and SQL may hold by chance.
+  return [...new Set(texts)].filter((text) => text.length >= 12);
+}
+
+function system<T extends object>(test: TestApp, sql: string): Promise<T[]> {
+  return test.services.db.transaction({ kind: 'system' }, (tx) => test.services.db.rows<T>(tx, sql));
+}
+
+/** The forms in which a secret could hide in a text (guard R25). */
+export function disguises(secret: string): string[] {
+  const octets = Buffer.from(secret, 'utf8');
+  return [
+    secret,
+    octets.toString('hex'),
+    octets.toString('base64').replace(/=+$/, ''),
+    octets.toString('base64url'),
+    encodeURIComponent(secret),
+    JSON.stringify(secret).slice(1, -1),
+    [...secret].reverse().join(''),
+  ];
+}
+
+function findIn(text: string, secrets: readonly string[]): boolean {
+  return secrets.some((secret) => disguises(secret).some((form) => text.includes(form)));
+}
+
+/** G1: no passphrase in the log lines, mails, job rows, the log of handovers, error bodies, addresses or any dealer's answer. */
+async function nothingLeaked(test: TestApp, recorded: readonly Recorded[]): Promise<void> {
+  const secrets = await markers(test);
+  const dealers = await dealerSessions(test, recorded);
+  const names = dealers.size > 0 ? await guestNames(test) : [];
+  for (const answer of recorded) {
+    const where = `${answer.method} ${answer.path} answered ${answer.status}`;
+    expect(findIn(answer.path, secrets), `G1: a passphrase in the address: ${where}`).toBe(false);
+    if (answer.status >= 400)
+      expect(findIn(answer.text, secrets), `G1: a passphrase in an error: ${where}`).toBe(false);
+    if (answer.sessionId && dealers.has(answer.sessionId)) {
+      expect(findIn(answer.text, secrets), `G1: a passphrase for a dealer: ${where}`).toBe(false);
+      expect(
+        names.filter((name) => answer.text.includes(name)),
+        `G1: a guest's name for a dealer: ${where}`,
+      ).toEqual([]);
+    }
+  }
+  expect(findIn(test.logged(), secrets), 'G1: a passphrase in the log lines').toBe(false);
+  const sinks = await system<{ sink: string; text: string }>(
+    test,
+    `SELECT 'mail' AS sink, data::text || coalesce(last_error, '') || message_key AS text FROM mail_outbox
+     UNION ALL SELECT 'job', coalesce(data::text, '') || coalesce(output::text, '') FROM pgboss.job
+     UNION ALL SELECT 'idempotency key', coalesce(response::text, '') FROM idempotency_keys
+     UNION ALL SELECT 'log entry', body::text FROM log_entries`,
+  );
+  for (const { sink, text } of sinks)
+    expect(findIn(text, secrets), `G1: a passphrase in a ${sink}`).toBe(false);
+}
+
+async function dealerSessions(test: TestApp, recorded: readonly Recorded[]): Promise<Set<string>> {
+  const { sha256 } = await import('../../server/http/session.ts');
+  const rows = await system<{ id_hash: Buffer }>(
+    test,
+    `SELECT s.id_hash FROM sessions s JOIN dealer_members d ON d.person_id = s.person_id
+     WHERE NOT EXISTS (SELECT 1 FROM memberships m WHERE m.person_id = s.person_id)`,
+  );
+  const hashes = new Set(rows.map((row) => row.id_hash.toString('hex')));
+  const ids = recorded.flatMap((answer) => (answer.sessionId ? [answer.sessionId] : []));
+  return new Set(ids.filter((id) => hashes.has(sha256(id).toString('hex'))));
+}
+
+async function guestNames(test: TestApp): Promise<string[]> {
+  const rows = await system<{ name: string }>(test, 'SELECT name FROM guests WHERE name IS NOT NULL');
+  return rows.map((row) => row.name).filter((name) => name.length >= 6);
+}
+
+/** G3: what must be true of every stored rotation (guard section 3.1, I1, I3, I5), whatever a test did. */
+async function rotationsHold(test: TestApp): Promise<void> {
+  const broken = await system<{ rule: string; id: string }>(
+    test,
+    `SELECT 'I1: a live or open ticket whose passphrase is no longer kept' AS rule, r.id::text FROM rotations r
+       JOIN passphrase_secrets s ON s.passphrase_id IN (r.to_passphrase_id)
+       WHERE r.state NOT IN ('planned','retired','cancelled','superseded') AND s.sealed IS NULL
+     UNION ALL
+     SELECT 'I1: the old passphrase of an open ticket is no longer kept', r.id::text FROM rotations r
+       JOIN passphrase_secrets s ON s.passphrase_id = r.from_passphrase_id
+       WHERE r.state IN ('staged','handed_out','applying','unknown','needs_somebody','reconciling') AND s.sealed IS NULL
+     UNION ALL
+     SELECT 'I3: live without every access point verified under its ticket', r.id::text FROM rotations r
+       JOIN rotation_targets t ON t.rotation_id = r.id
+       WHERE r.state = 'live' AND (t.seen IS DISTINCT FROM 'new' OR t.evidence IS NULL OR t.evidence = 'E0')
+     UNION ALL
+     SELECT 'I3: a live rotation whose passphrase is not the live one', r.id::text FROM rotations r
+       JOIN passphrases p ON p.id = r.to_passphrase_id
+       WHERE r.state = 'live' AND (p.live_at IS NULL OR p.retired_at IS NOT NULL)
+     UNION ALL
+     SELECT 'I4: two tickets share a number', min(r.id::text) FROM rotations r WHERE r.ticket IS NOT NULL
+       GROUP BY r.network_id, r.epoch, r.ticket HAVING count(*) > 1
+     UNION ALL
+     SELECT 'I5: more than one open ticket', r.network_id::text FROM rotations r
+       WHERE r.state IN ('planned','staged','handed_out','applying','unknown','needs_somebody','reconciling')
+       GROUP BY r.network_id HAVING count(*) > 1`,
+  );
+  expect(broken, 'G3: rotation invariants').toEqual([]);
+}
+
+/** G5: no connection borrowed, no transaction open, no advisory lock left. */
+async function nothingHeld(test: TestApp): Promise<void> {
+  const left = await test.services.db.sequelize.query<{ what: string }>(
+    `SELECT 'open transaction' AS what FROM pg_stat_activity
+       WHERE datname = current_database() AND application_name = 'quayword' AND state LIKE 'idle in transaction%'
+     UNION ALL SELECT 'advisory lock' FROM pg_locks l JOIN pg_database d ON d.oid = l.database
+       WHERE l.locktype = 'advisory' AND d.datname = current_database()
+         AND l.pid IN (SELECT pid FROM pg_stat_activity WHERE application_name = 'quayword')`,
+    { type: QueryTypes.SELECT },
+  );
+  expect(left, 'G5: something was left open').toEqual([]);
+}
+
+/** Run after every server test: the oracles of the guard that a single test cannot forget. */
+export async function oracles(test: TestApp, recorded: readonly Recorded[]): Promise<void> {
+  await nothingLeaked(test, recorded);
+  await rotationsHold(test);
+  await nothingHeld(test);
+}
+
+const run = promisify(execFile);
+
+/** G1 over the whole database as text (R25): dumped as its owner, once a file. */
+export async function dumpHoldsNoSecret(test: TestApp): Promise<void> {
+  const secrets = await markers(test);
+  if (secrets.length === 0) return;
+  const { stdout } = await run('pg_dump', ['--enable-row-security', '--inserts', test.ownerUrl], {
+    maxBuffer: 512 * 1024 * 1024,
+    env: { ...process.env, PATH: `${process.env.PATH}:/usr/lib/postgresql/15/bin` },
+  });
+  expect(findIn(stdout, secrets), 'G1: a passphrase in the database dump').toBe(false);
+}
