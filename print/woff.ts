@@ -6,7 +6,7 @@ const LEFT_OUT = new Set(['GSUB', 'GPOS', 'GDEF', 'DSIG']);
 const WOFF_SIGNATURE = 0x774f4646;
 const WHOLE_FONT_SUM = 0xb1b0afba;
 
-interface Table {
+export interface Table {
   readonly tag: string;
   readonly data: Buffer;
 }
@@ -46,7 +46,8 @@ function unpack(woff: Buffer, entry: number, tag: string): Buffer {
   return data;
 }
 
-function assemble(flavor: number, tables: readonly Table[]): Buffer {
+/** Puts tables, sorted by tag, into one font file with its directory and checksums. */
+export function assemble(flavor: number, tables: readonly Table[]): Buffer {
   const count = tables.length;
   const power = 2 ** Math.floor(Math.log2(count));
   const bodyStart = 12 + count * 16;

@@ -14,17 +14,26 @@ export function Page({ children, className }: PageProps) {
 interface SectionProps extends PageProps {
   title: ReactNode;
   action?: ReactNode;
+  /** On wide screens the heading stands at the left of its block, as in a form's margin. */
+  aside?: boolean;
 }
 
 /** A block of a page under its own heading. */
-export function Section({ title, action, children, className }: SectionProps) {
+export function Section({ title, action, children, className, aside }: SectionProps) {
   return (
-    <section className={cx('flex flex-col gap-3', className)}>
-      <div className="flex flex-wrap items-baseline justify-between gap-3">
+    <section
+      className={cx(
+        'flex flex-col gap-3',
+        aside &&
+          'border-t border-rule pt-6 first:border-t-0 first:pt-0 lg:grid lg:grid-cols-[16rem_1fr] lg:gap-x-8',
+        className,
+      )}
+    >
+      <div className="flex flex-wrap content-start items-baseline justify-between gap-3">
         <h2 className="text-lg">{title}</h2>
         {action}
       </div>
-      {children}
+      {aside ? <div className="flex min-w-0 flex-col gap-4">{children}</div> : children}
     </section>
   );
 }

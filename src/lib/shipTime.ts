@@ -90,7 +90,7 @@ export function zoneOffset(zone: string, at: Instant): string {
       .formatToParts(asDate(at))
       .find((part) => part.type === 'timeZoneName')?.value ?? 'GMT';
   const match = /([+-])(\d{2}):(\d{2})/.exec(name);
-  if (!match) return 'UTC';
+  if (!match || (match[2] === '00' && match[3] === '00')) return 'UTC';
   const [, sign, hours, minutes] = match;
   return `UTC${sign}${Number(hours)}${minutes === '00' ? '' : `:${minutes}`}`;
 }

@@ -29,17 +29,17 @@ export function AccountPage() {
   useTitle('Your account');
   if (!session) return <Loading />;
   return (
-    <Page className="max-w-5xl gap-10">
-      <Section title="You">
+    <Page className="max-w-5xl">
+      <Section aside title="You">
         <PersonForm key={session.person.id} person={session.person} />
       </Section>
-      <Section title="Password">
+      <Section aside title="Password">
         <PasswordForm />
       </Section>
-      <Section title="Second factor">
+      <Section aside title="Second factor">
         <SecondFactor state={session.secondFactor} />
       </Section>
-      <Section title="Where you are signed in">
+      <Section aside title="Where you are signed in">
         <Devices />
         <FormError error={endAll.error} />
         <Button
@@ -50,7 +50,7 @@ export function AccountPage() {
           Sign out everywhere, here too
         </Button>
       </Section>
-      <Section title="Colours on this device">
+      <Section aside title="Colours on this device">
         <div className="max-w-xs">
           <ThemeSwitch />
         </div>
