@@ -6,9 +6,9 @@ export function FirstLoad() {
   return (
     <>
       <Scale segments={24} className="h-[7px]" />
-      <div className="px-4 sm:px-8">
+      <main id="main" className="px-4 sm:px-8">
         <Loading>Fetching Quayword…</Loading>
-      </div>
+      </main>
     </>
   );
 }

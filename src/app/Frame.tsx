@@ -26,8 +26,10 @@ export function Frame({ zone, marks, title, line, places, menu }: FrameProps) {
       >
         Skip to the page
       </a>
-      <Neatline zone={zone} now={now} marks={marks} />
-      <AppHeader title={title} line={line} places={places} menu={menu} />
+      <header className="border-b border-rule">
+        <Neatline zone={zone} now={now} marks={marks} />
+        <AppHeader title={title} line={line} places={places} menu={menu} />
+      </header>
       <main id="main" tabIndex={-1} className="flex grow flex-col outline-none">
         <Outlet />
       </main>

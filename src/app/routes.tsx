@@ -2,9 +2,9 @@ import type { RouteObject } from 'react-router-dom';
 import { FirstLoad } from './FirstLoad.tsx';
 import { Root } from './Root.tsx';
 import { NotFound, RouteError } from './RouteError.tsx';
-import { firstPlaceLoader, sessionLoader } from './session.ts';
+import { firstPlaceLoader, sessionLoader, vesselFirstPlaceLoader } from './session.ts';
 
-const vesselPages: RouteObject[] = [];
+const vesselPages: RouteObject[] = [{ index: true, loader: vesselFirstPlaceLoader, Component: FirstLoad }];
 
 const fleetPages: RouteObject[] = [];
 

@@ -4,7 +4,7 @@ import { sessionQuery } from '../features/auth/queries.ts';
 import { ApiError } from '../lib/errors.ts';
 import { queryClient } from '../lib/queryClient.ts';
 import { rememberPlace } from '../lib/rememberedPlace.ts';
-import { firstPlace } from './places.ts';
+import { firstPlace, vesselPlaces } from './places.ts';
 
 /** Lets only signed-in people further; others sign in and come back to where they were going. */
 export async function sessionLoader({ request }: LoaderFunctionArgs) {
@@ -21,6 +21,14 @@ export async function sessionLoader({ request }: LoaderFunctionArgs) {
 /** `/` leads to the person's first place. */
 export async function firstPlaceLoader(args: LoaderFunctionArgs) {
   return redirect(firstPlace(await sessionLoader(args)));
+}
+
+/** A vessel's own address leads to the first of its pages the person may see. */
+export async function vesselFirstPlaceLoader(args: LoaderFunctionArgs) {
+  const session = await sessionLoader(args);
+  const membership = session.memberships.find(({ vesselId }) => vesselId === args.params.vesselId);
+  const place = membership && vesselPlaces(membership.vesselId, membership.roles)[0];
+  return redirect(place?.to ?? '/account');
 }
 
 /** The session; only for what stands below `sessionLoader`. */

@@ -24,8 +24,7 @@ export function Section({ title, action, children, className, aside }: SectionPr
     <section
       className={cx(
         'flex flex-col gap-3',
-        aside &&
-          'border-t border-rule pt-6 first:border-t-0 first:pt-0 lg:grid lg:grid-cols-[16rem_1fr] lg:gap-x-8',
+        aside && 'border-t border-rule pt-6 lg:grid lg:grid-cols-[16rem_1fr] lg:gap-x-8',
         className,
       )}
     >

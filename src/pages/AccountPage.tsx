@@ -3,7 +3,7 @@ import { useNavigate } from 'react-router-dom';
 import { Button } from '../components/Button.tsx';
 import { Page, Section } from '../components/Page.tsx';
 import { Loading } from '../components/PageState.tsx';
-import { ThemeSwitch } from '../components/ThemeSwitch.tsx';
+import { Sentence } from '../components/Sentence.tsx';
 import { Devices } from '../features/auth/Devices.tsx';
 import { FormError } from '../features/auth/FormError.tsx';
 import { PasswordForm } from '../features/auth/PasswordForm.tsx';
@@ -30,11 +30,12 @@ export function AccountPage() {
   if (!session) return <Loading />;
   return (
     <Page className="max-w-5xl">
-      <Section aside title="You">
+      <Sentence>Your name, your password, and where you are signed in.</Sentence>
+      <Section aside title="Name and language">
         <PersonForm key={session.person.id} person={session.person} />
       </Section>
       <Section aside title="Password">
-        <PasswordForm />
+        <PasswordForm email={session.person.email} />
       </Section>
       <Section aside title="Second factor">
         <SecondFactor state={session.secondFactor} />
@@ -49,11 +50,6 @@ export function AccountPage() {
         >
           Sign out everywhere, here too
         </Button>
-      </Section>
-      <Section aside title="Colours on this device">
-        <div className="max-w-xs">
-          <ThemeSwitch />
-        </div>
       </Section>
     </Page>
   );

@@ -10,7 +10,7 @@ import { NewPasswordField } from './NewPasswordField.tsx';
 import { changePassword, sessionQuery } from './queries.ts';
 
 /** Changes the password of the person signed in. */
-export function PasswordForm() {
+export function PasswordForm({ email }: { email: string }) {
   const client = useQueryClient();
   const notices = useNotices();
   const [current, setCurrent] = useState('');
@@ -30,6 +30,7 @@ export function PasswordForm() {
   };
   return (
     <form onSubmit={submit} noValidate className="flex max-w-md flex-col gap-4">
+      <input type="text" autoComplete="username" value={email} readOnly hidden />
       <TextInput
         label="Password today"
         type="password"
