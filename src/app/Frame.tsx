@@ -4,6 +4,7 @@ import { Neatline, type NeatlineMark } from '../components/Neatline.tsx';
 import { useNow } from '../lib/clock.ts';
 import { AppHeader } from './AppHeader.tsx';
 import type { Place } from './places.ts';
+import { SecondFactorNotice } from './SecondFactorNotice.tsx';
 
 interface FrameProps {
   /** IANA name of the zone whose day runs along the top. */
@@ -30,6 +31,7 @@ export function Frame({ zone, marks, title, line, places, menu }: FrameProps) {
         <Neatline zone={zone} now={now} marks={marks} />
         <AppHeader title={title} line={line} places={places} menu={menu} />
       </header>
+      <SecondFactorNotice />
       <main id="main" tabIndex={-1} className="flex grow flex-col outline-none">
         <Outlet />
       </main>

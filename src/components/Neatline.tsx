@@ -28,6 +28,11 @@ function summary(clock: string, marks: readonly NeatlineMark[], zone: string): s
   return `Ship's time ${clock}. ${changes.length ? `Today: ${changes.join(', ')}.` : 'No change today.'}`;
 }
 
+/** Whether a mark stands so near to an hour's label that both could not be read. */
+function covers(mark: NeatlineMark, hour: number, zone: string): boolean {
+  return Math.abs(dayFraction(mark.at, zone) - hour / 24) < 0.012;
+}
+
 /** The ship's day along a page's top edge: 24 divisions, the hour now, and a mark at each change due today. */
 export function Neatline({ zone, now, marks = [] }: NeatlineProps) {
   const at = dayFraction(now, zone);
@@ -47,7 +52,8 @@ export function Neatline({ zone, now, marks = [] }: NeatlineProps) {
           className={cx(
             'absolute top-2 -translate-x-1/2 text-[0.6875rem] leading-4 text-soft',
             hour % 6 === 3 && 'max-sm:hidden',
-            Math.abs(hour / 24 - at - 0.02) < 0.045 && 'invisible',
+            (Math.abs(hour / 24 - at - 0.02) < 0.045 || today.some((mark) => covers(mark, hour, zone))) &&
+              'invisible',
           )}
         >
           {String(hour).padStart(2, '0')}

@@ -85,14 +85,14 @@ function Bar({ notice, onClose }: { notice: Notice; onClose: (id: number) => voi
       {undo ? (
         <button
           type="button"
-          className="min-h-12 rounded-md border border-on-fill px-4 font-medium whitespace-nowrap focus-visible:outline-on-fill"
+          className="flex min-h-12 items-center gap-2 rounded-md border border-on-fill px-4 font-medium whitespace-nowrap focus-visible:outline-on-fill"
           onClick={() => {
             onClose(id);
             undo.run();
           }}
         >
           {undo.label}
-          <span aria-hidden="true" className="inline-block w-[2ch] text-right font-light">
+          <span aria-hidden="true" className="w-[2ch] text-right font-light">
             {left}
           </span>
         </button>

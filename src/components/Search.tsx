@@ -1,4 +1,5 @@
 import { useEffect, useId, useRef } from 'react';
+import { SEARCH_MAX } from '../../shared/rules/limits.ts';
 import { BOX } from './Field.tsx';
 
 interface SearchProps {
@@ -41,6 +42,7 @@ export function Search({ label, value, onChange, className }: SearchProps) {
         id={id}
         ref={box}
         type="search"
+        maxLength={SEARCH_MAX}
         autoComplete="off"
         spellCheck={false}
         aria-keyshortcuts="/"

@@ -40,7 +40,7 @@ interface ThProps extends ThHTMLAttributes<HTMLTableCellElement> {
 
 /** A column's heading; with `onSort` it can be pressed, and says which way the column is sorted. */
 export function Th({ numeric, onSort, sorted, className, children, ...rest }: ThProps) {
-  const arrow = sorted === 'ascending' ? ' ↑' : sorted === 'descending' ? ' ↓' : '';
+  const arrow = sorted === 'ascending' ? '↑' : sorted === 'descending' ? '↓' : '';
   return (
     <th
       scope="col"
@@ -56,7 +56,7 @@ export function Th({ numeric, onSort, sorted, className, children, ...rest }: Th
         <button
           type="button"
           onClick={onSort}
-          className="-my-2 min-h-11 py-2 text-inherit underline-offset-4 hover:underline"
+          className="-mt-3 -mb-2 inline-flex min-h-11 items-end gap-1 pt-3 pb-2 text-inherit underline-offset-4 hover:underline"
         >
           {children}
           <span aria-hidden="true">{arrow}</span>
