@@ -12,7 +12,7 @@ export function csvText(heading: readonly string[], rows: readonly (readonly Csv
 }
 
 // Tab, carriage return and line feed start a formula in some programs as well.
-const FORMULA = /^[\s\u0000'"]*[=+\-@\uff1d\uff0b\uff0d\uff20]|^[\t\r\n\u0000]/u;
+const FORMULA = /^[\s'"]*[=+\-@\uff1d\uff0b\uff0d\uff20]|^[\t\r\n]/u;
 
 function field(cell: CsvCell): string {
   if (cell === null) return '';
