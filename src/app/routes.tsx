@@ -6,7 +6,22 @@ import { firstPlaceLoader, sessionLoader, vesselFirstPlaceLoader } from './sessi
 
 const vesselPages: RouteObject[] = [{ index: true, loader: vesselFirstPlaceLoader, Component: FirstLoad }];
 
-const fleetPages: RouteObject[] = [];
+const fleetPages: RouteObject[] = [
+  {
+    index: true,
+    lazy: async () => {
+      const { FleetPage, fleetLoader } = await import('../pages/FleetPage.tsx');
+      return { Component: FleetPage, loader: fleetLoader };
+    },
+  },
+  {
+    path: 'vessels/:vesselId',
+    lazy: async () => {
+      const { FleetVesselPage, fleetVesselLoader } = await import('../pages/FleetVesselPage.tsx');
+      return { Component: FleetVesselPage, loader: fleetVesselLoader };
+    },
+  },
+];
 
 /** Every address of the client, and nothing else: the only place that knows all pages. */
 export const routes: RouteObject[] = [
