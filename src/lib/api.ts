@@ -1,4 +1,5 @@
 import type { Problem } from '../../shared/api/common.ts';
+import { keyFor, noteAnswered, noteUnanswered, requestDigest } from './actionKeys.ts';
 import { noteServerDate } from './clock.ts';
 import { ApiError, AwayError } from './errors.ts';
 import { serverIsAway } from './serverState.ts';
@@ -12,7 +13,7 @@ interface Options {
   /** Sent as JSON, or as it is when it is a file or a form. */
   body?: unknown;
   signal?: AbortSignal;
-  /** Repeats of one deliberate action carry the same key, so that it happens once. Made up when absent. */
+  /** Repeats of one deliberate action carry the same key, so that it happens once. Chosen by `keyFor` when absent. */
   actionKey?: string;
 }
 
@@ -80,7 +81,7 @@ async function once(method: Method, path: string, options: Options, actionKey: s
   } catch (error) {
     if (options.signal?.aborted) throw error;
     serverIsAway();
-    throw new AwayError();
+    throw new AwayError(method !== 'GET');
   }
   noteServerDate(response.headers.get('Date'), Date.now());
   if (response.ok) return response;
@@ -91,7 +92,7 @@ async function once(method: Method, path: string, options: Options, actionKey: s
   const noDatabase = problem.code === 'unavailable' && problem.retryAfter !== undefined;
   if (noServer || noDatabase) {
     serverIsAway();
-    throw new AwayError();
+    throw new AwayError(method !== 'GET');
   }
   throw problem;
 }
@@ -106,6 +107,21 @@ async function send(method: Method, path: string, options: Options): Promise<Res
       return await once(method, path, options, actionKey);
     }
     if (error.code === 'not_signed_in') signedOut?.();
+    throw error;
+  }
+}
+
+async function change(method: Method, path: string, options: Options): Promise<Response> {
+  if (options.actionKey !== undefined || isBinary(options.body)) return send(method, path, options);
+  const digest = await requestDigest(method, path, options.body);
+  const actionKey = keyFor(digest);
+  try {
+    const response = await send(method, path, { ...options, actionKey });
+    noteAnswered(digest);
+    return response;
+  } catch (error) {
+    if (error instanceof ApiError) noteAnswered(digest);
+    else noteUnanswered(digest, actionKey);
     throw error;
   }
 }
@@ -130,7 +146,7 @@ export async function apiSend<T = void>(
   body?: unknown,
   options: Omit<Options, 'body'> = {},
 ): Promise<T> {
-  return json<T>(await send(method, path, { ...options, body }));
+  return json<T>(await change(method, path, { ...options, body }));
 }
 
 function fileName(response: Response, fallback: string): string {

@@ -21,10 +21,14 @@ export class ApiError extends Error {
   }
 }
 
-/** The server, or the database behind it, cannot be reached just now. Nothing is known to have been changed. */
+/** The server, or the database behind it, cannot be reached just now. A change that was under way may have happened. */
 export class AwayError extends Error {
-  constructor() {
-    super('Quayword cannot reach its server just now. This page carries on by itself as soon as it can.');
+  constructor(changing = false) {
+    super(
+      changing
+        ? 'Quayword cannot reach its server just now. Keep this page open and press again once it is back; it will not happen twice.'
+        : 'Quayword cannot reach its server just now. This page carries on by itself as soon as it can.',
+    );
     this.name = 'AwayError';
   }
 }
