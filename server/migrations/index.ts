@@ -3,6 +3,7 @@ import { migration as people } from './0001_people.ts';
 import { migration as networks } from './0002_networks.ts';
 import { migration as aboard } from './0003_people_aboard.ts';
 import { migration as guard } from './0004_guard.ts';
+import { migration as clockwork } from './0005_clockwork.ts';
 
 /** In the order in which they run. A migration that has run anywhere is never edited again. */
-export const migrations: readonly Migration[] = [people, networks, aboard, guard];
+export const migrations: readonly Migration[] = [people, networks, aboard, guard, clockwork];

@@ -84,6 +84,76 @@ export async function sealPassphrase(services: Services, tx: Tx, given: NewPassp
   return id;
 }
 
+/** A passphrase to be stored whose generation is known already, under the lock on its network. */
+export interface NumberedPassphrase extends NewPassphrase {
+  readonly generation: number;
+}
+
+/** Which of these their vessels had before, by keyed fingerprint: their places in the list. */
+export async function findReused(
+  services: Services,
+  tx: Tx,
+  given: readonly Pick<NewPassphrase, 'vesselId' | 'passphrase'>[],
+): Promise<Set<number>> {
+  const rows = await services.db.rows<{ place: number }>(
+    tx,
+    `SELECT g.place FROM jsonb_to_recordset($given::jsonb) AS g(place integer, vessel_id uuid, fingerprint text)
+     JOIN passphrase_secrets s ON s.vessel_id = g.vessel_id AND s.fingerprint = decode(g.fingerprint, 'hex')`,
+    {
+      given: JSON.stringify(
+        given.map(({ vesselId, passphrase }, place) => ({
+          place,
+          vessel_id: vesselId,
+          fingerprint: services.vault.fingerprint(vesselId, passphrase).toString('hex'),
+        })),
+      ),
+    },
+  );
+  return new Set(rows.map((row) => row.place));
+}
+
+/**
+ * Stores many passphrases sealed, in one statement; answers their ids in the same order. The caller holds the
+ * locks on their networks, has counted the generations up, and has made sure none was used before: a reused
+ * one fails the statement by the unique fingerprint.
+ */
+export async function sealPassphrases(
+  services: Services,
+  tx: Tx,
+  given: readonly NumberedPassphrase[],
+): Promise<string[]> {
+  const { db, vault } = services;
+  const rows = given.map((one) => {
+    const id = randomUUID();
+    const { keyId, sealed } = vault.seal(secretPlace({ ...one, id }), one.passphrase);
+    return {
+      id,
+      vessel_id: one.vesselId,
+      network_id: one.networkId,
+      generation: one.generation,
+      origin: one.origin,
+      bits: one.bits,
+      created_at: one.now,
+      key_id: keyId,
+      sealed: sealed.toString('hex'),
+      fingerprint: vault.fingerprint(one.vesselId, one.passphrase).toString('hex'),
+    };
+  });
+  await db.run(
+    tx,
+    `WITH given AS (
+       SELECT * FROM jsonb_to_recordset($rows::jsonb) AS g(id uuid, vessel_id uuid, network_id uuid, generation integer,
+         origin text, bits numeric, created_at timestamptz, key_id text, sealed text, fingerprint text)),
+     facts AS (
+       INSERT INTO passphrases(id, vessel_id, network_id, generation, origin, bits, created_at)
+       SELECT id, vessel_id, network_id, generation, origin, bits, created_at FROM given)
+     INSERT INTO passphrase_secrets(passphrase_id, vessel_id, key_id, sealed, fingerprint)
+     SELECT id, vessel_id, key_id, decode(sealed, 'hex'), decode(fingerprint, 'hex') FROM given`,
+    { rows: JSON.stringify(rows) },
+  );
+  return rows.map((row) => row.id);
+}
+
 /** Opens a passphrase. Callers are the few deliberate ways out, and each writes the log line first. */
 export async function openPassphrase(services: Services, tx: Tx, passphraseId: string): Promise<string> {
   const row = await services.db.row<{
