@@ -1,28 +1,16 @@
-import { createHash } from 'node:crypto';
 import type { Request, Response } from 'express';
 import type { z } from 'zod';
-import type { Contract } from '../../shared/api/contract.ts';
 import { dealerMay, may } from '../../shared/rules/permissions.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, forbidden, notFound } from '../errors.ts';
 import type { Services } from '../services.ts';
 import { idempotent } from './idempotency.ts';
 import { requireSameOrigin } from './origin.ts';
+import type { AnyContract, FileReply, Presented } from './reply.ts';
 import { type Actor, FRESH_MS, readSessionCookie, resolveActor } from './session.ts';
 import { parseBody, parseParams, parseQuery } from './validate.ts';
 
-/** A file answered instead of JSON. */
-export interface FileReply {
-  readonly contentType: 'application/pdf' | 'text/csv; charset=utf-8';
-  /** Without path or control characters; from our own words, never from input. */
-  readonly filename: string;
-  readonly body: Buffer | string;
-}
-
 type Output<T> = T extends z.ZodType ? z.output<T> : undefined;
-
-// biome-ignore lint/suspicious/noExplicitAny: the widest contract, used only as a constraint
-export type AnyContract = Contract<any, any, any, any>;
 
 type ParamsOf<C> = C extends { params?: infer P } ? Output<NonNullable<P>> : undefined;
 type QueryOf<C> = C extends { query?: infer Q } ? Output<NonNullable<Q>> : undefined;
@@ -188,12 +176,6 @@ function admitActor(services: Services, contract: AnyContract, actor: Actor): vo
   }
 }
 
-export interface Presented {
-  readonly status: number;
-  readonly json?: unknown;
-  readonly file?: FileReply;
-}
-
 const isFile = (reply: unknown): reply is FileReply =>
   typeof reply === 'object' && reply !== null && 'filename' in reply && 'contentType' in reply;
 
@@ -219,8 +201,3 @@ function send(contract: AnyContract, response: Response, reply: Presented): void
   }
   if (contract.secret) response.locals.secret = true;
 }
-
-export const bodyHash = (body: unknown): Buffer =>
-  createHash('sha256')
-    .update(JSON.stringify(body ?? null))
-    .digest();

@@ -1,7 +1,8 @@
+import { createHash } from 'node:crypto';
 import type { Tx } from '../db/connection.ts';
 import { AppError } from '../errors.ts';
 import type { Services } from '../services.ts';
-import { type AnyContract, bodyHash, type Presented } from './endpoint.ts';
+import type { AnyContract, Presented } from './reply.ts';
 import type { Actor } from './session.ts';
 
 interface Once {
@@ -78,3 +79,8 @@ export async function idempotent(
   );
   return reply;
 }
+
+const bodyHash = (body: unknown): Buffer =>
+  createHash('sha256')
+    .update(JSON.stringify(body ?? null))
+    .digest();

@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { problem } from '../../shared/api/common.ts';
-import type { AnyContract, Endpoint } from './endpoint.ts';
+import type { Endpoint } from './endpoint.ts';
+import type { AnyContract } from './reply.ts';
 
 type Json = Record<string, unknown>;
 

@@ -1,7 +1,7 @@
 import type { Request } from 'express';
 import type { z } from 'zod';
 import { AppError, notFound } from '../errors.ts';
-import type { AnyContract } from './endpoint.ts';
+import type { AnyContract } from './reply.ts';
 
 /** A path that cannot name anything of ours names nothing. */
 export function parseParams(contract: AnyContract, request: Request): unknown {

@@ -1,6 +1,6 @@
 import { randomUUID } from 'node:crypto';
 import { beforeAll, describe, expect, test } from 'vitest';
-import type { AnyContract } from '../../server/http/endpoint.ts';
+import type { AnyContract } from '../../server/http/reply.ts';
 import { endpoints } from '../../server/routes.ts';
 import {
   AUDIENCES,
