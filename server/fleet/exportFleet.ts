@@ -1,7 +1,7 @@
 import type { Tx } from '../db/connection.ts';
 import { notFound } from '../errors.ts';
 import { type CsvCell, csvText } from '../http/csv.ts';
-import type { FileReply } from '../http/endpoint.ts';
+import type { FileReply } from '../http/reply.ts';
 import type { Services } from '../services.ts';
 import { fleetFacts, type NetworkFacts, type VesselFacts } from './fleetFacts.ts';
 import { AUDIENCE_WORDS, ageDays, guessWords, nextChangeOf, pastLimit, standingOf } from './judge.ts';

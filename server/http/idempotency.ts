@@ -56,7 +56,7 @@ export async function idempotent(
       'SELECT body_hash, status, response FROM idempotency_keys WHERE person_id = $person AND route = $route AND key = $key',
       { person: bind.person, route: bind.route, key: bind.key },
     );
-    if (!known || !known.body_hash.equals(bind.hash)) {
+    if (!known?.body_hash.equals(bind.hash)) {
       throw new AppError(
         'key_reused',
         'That request was already used for something else. Reload the page and try again.',
