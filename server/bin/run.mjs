@@ -1,15 +1,7 @@
 import { existsSync } from 'node:fs';
 import path from 'node:path';
-import {
-  checkNode,
-  databaseForServer,
-  main,
-  packagesUp,
-  ROOT,
-  runToEnd,
-  SetUpError,
-  serverEnvironment,
-} from './setUp.mjs';
+import { databaseForServer } from './serverDatabase.mjs';
+import { checkNode, main, packagesUp, ROOT, runToEnd, SetUpError, serverEnvironment } from './setUp.mjs';
 
 // Runs one TypeScript program with packages, database and settings in place, as the standing commands need it.
 await main(async () => {

@@ -1,11 +1,11 @@
 import { spawn } from 'node:child_process';
 import { existsSync, readFileSync } from 'node:fs';
 import path from 'node:path';
+import { databaseForServer } from './serverDatabase.mjs';
 import {
   checkNode,
   clientUp,
   DATA,
-  databaseForServer,
   main,
   packagesUp,
   portTaken,
