@@ -63,7 +63,7 @@ describe('the fleet', () => {
     await holder(app, tamarisk, 'crew', { departed: ago(1) });
     await rotation(app, corvina, 'owner', {
       state: 'planned',
-      reasons: [{ code: 'owner_aboard', held: true }],
+      reasons: [{ code: 'owner_aboard', until: ago(-9).toISOString() }],
     });
 
     const fleet = await read(client);
