@@ -4,8 +4,8 @@ import { NoticesProvider } from '../components/Notices.tsx';
 import { StepUpProvider } from '../features/auth/StepUp.tsx';
 import { onSignedOut } from '../lib/api.ts';
 import { rememberPlace } from '../lib/rememberedPlace.ts';
+import { goAndForget, tellOtherTabs, whenOtherTabSignsOut } from '../lib/signedOut.ts';
 import { ServerBanner } from './ServerBanner.tsx';
-import { goAndForget, tellOtherTabs, whenOtherTabSignsOut } from './signedOut.ts';
 
 /** What stands around every page: notices, the question "is it you?", the banner, focus and scroll. */
 export function Root() {

@@ -1,7 +1,7 @@
 import { useMutation } from '@tanstack/react-query';
 import { useNavigate } from 'react-router-dom';
 import { signOut } from '../features/auth/queries.ts';
-import { goAndForget, tellOtherTabs } from './signedOut.ts';
+import { goAndForget, tellOtherTabs } from '../lib/signedOut.ts';
 
 /** Ends the session, forgets what was fetched, and goes to the sign-in page. */
 export function useSignOut() {

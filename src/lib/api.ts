@@ -97,6 +97,15 @@ async function once(method: Method, path: string, options: Options, actionKey: s
   throw problem;
 }
 
+/** Another tab may have proved who it is, which renews the session's token for all tabs. True when it had changed. */
+async function renewCsrf(): Promise<boolean> {
+  const before = csrf;
+  const response = await once('GET', '/session', {}, '').catch(() => null);
+  const session = (await response?.json()) as { csrf: string } | undefined;
+  if (session) csrf = session.csrf;
+  return session !== undefined && csrf !== before;
+}
+
 async function send(method: Method, path: string, options: Options): Promise<Response> {
   const actionKey = options.actionKey ?? crypto.randomUUID();
   try {
@@ -104,6 +113,9 @@ async function send(method: Method, path: string, options: Options): Promise<Res
   } catch (error) {
     if (!(error instanceof ApiError)) throw error;
     if (error.code === 'step_up' && confirmIdentity && (await confirmIdentity())) {
+      return await once(method, path, options, actionKey);
+    }
+    if (error.code === 'bad_origin' && method !== 'GET' && (await renewCsrf())) {
       return await once(method, path, options, actionKey);
     }
     if (error.code === 'not_signed_in') signedOut?.();

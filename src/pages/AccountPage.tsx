@@ -11,6 +11,7 @@ import { PersonForm } from '../features/auth/PersonForm.tsx';
 import { devicesQuery, endAllDevices, sessionQuery } from '../features/auth/queries.ts';
 import { SecondFactor } from '../features/auth/SecondFactor.tsx';
 import { startLoad } from '../lib/queryClient.ts';
+import { goAndForget, tellOtherTabs } from '../lib/signedOut.ts';
 import { useTitle } from '../lib/useTitle.ts';
 
 export function accountLoader() {
@@ -24,7 +25,10 @@ export function AccountPage() {
   const { data: session } = useQuery(sessionQuery);
   const endAll = useMutation({
     mutationFn: endAllDevices,
-    onSuccess: () => void navigate('/sign-in', { replace: true }),
+    onSuccess: () => {
+      tellOtherTabs();
+      void goAndForget(() => navigate('/sign-in', { replace: true }));
+    },
   });
   useTitle('Your account');
   if (!session) return <Loading />;

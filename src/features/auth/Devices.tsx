@@ -1,10 +1,10 @@
 import { useMutation, useQuery, useQueryClient } from '@tanstack/react-query';
+import type { DeviceView } from '../../../shared/api/auth.ts';
 import { Button } from '../../components/Button.tsx';
 import { PageState } from '../../components/PageState.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { useNow } from '../../lib/clock.ts';
 import { ageInWords } from '../../lib/shipTime.ts';
-import type { DeviceView } from './assumed.ts';
 import { FormError } from './FormError.tsx';
 import { devicesQuery, endDevice } from './queries.ts';
 

@@ -1,12 +1,12 @@
 import { type FormEvent, useState } from 'react';
+import type { AcceptInvitation, InvitationView } from '../../../shared/api/auth.ts';
 import type { Language } from '../../../shared/api/common.ts';
-import { NAME_MAX } from '../../../shared/rules/limits.ts';
+import { NAME_MAX, PASSWORD_MAX } from '../../../shared/rules/limits.ts';
 import { ROLE_NAMES } from '../../../shared/rules/permissions.ts';
 import { Button } from '../../components/Button.tsx';
 import { Select, TextInput } from '../../components/inputs.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { fieldError } from '../../lib/errors.ts';
-import type { AcceptInvitation, InvitationView } from './assumed.ts';
 import { FormError } from './FormError.tsx';
 import { LANGUAGES } from './languages.ts';
 import { NewPasswordField } from './NewPasswordField.tsx';
@@ -25,18 +25,30 @@ export function InvitationForm({ invitation, error, busy, onAccept }: Invitation
   const [locale, setLocale] = useState<Language>('en');
   const submit = (event: FormEvent) => {
     event.preventDefault();
-    if (!busy) onAccept(invitation.known ? {} : { name, password, locale });
+    if (!busy) onAccept(invitation.known ? { password } : { name, password, locale });
   };
   return (
     <form onSubmit={submit} noValidate className="flex w-full flex-col gap-5">
       <p>
         As {invitation.roles.map((role) => ROLE_NAMES[role]).join(', ')}, with the address{' '}
         <SafeText>{invitation.email}</SafeText>.
-        {invitation.known ? ' You already have an account here; it stays as it is.' : null}
+        {invitation.known
+          ? ' You already have an account here. Give its password to accept; nothing else about it changes.'
+          : null}
       </p>
-      {invitation.known ? null : (
+      <input type="text" autoComplete="username" value={invitation.email} readOnly hidden />
+      {invitation.known ? (
+        <TextInput
+          label="Your password"
+          type="password"
+          autoComplete="current-password"
+          maxLength={PASSWORD_MAX}
+          value={password}
+          onChange={(event) => setPassword(event.target.value)}
+          error={fieldError(error, 'password')}
+        />
+      ) : (
         <>
-          <input type="text" autoComplete="username" value={invitation.email} readOnly hidden />
           <TextInput
             label="Your name"
             hint="As it will stand in the log beside what you do."

@@ -1,9 +1,9 @@
 import { useMutation, useQueryClient } from '@tanstack/react-query';
 import { type FormEvent, useState } from 'react';
+import type { Enrolment } from '../../../shared/api/auth.ts';
 import { Button } from '../../components/Button.tsx';
 import { QrCode } from '../../components/QrCode.tsx';
 import { fieldError } from '../../lib/errors.ts';
-import type { Enrolment } from './assumed.ts';
 import { CodeField } from './CodeField.tsx';
 import { FormError } from './FormError.tsx';
 import { finishSecondFactor, sessionQuery } from './queries.ts';

@@ -13,7 +13,7 @@ import { signIn } from './queries.ts';
  * Mail and password, then the second factor's code when the server asks for it. Between the two the password is
  * only in this form.
  */
-export function SignInForm({ onDone }: { onDone: () => void }) {
+export function SignInForm({ onDone }: { onDone: (done: { endedOldest: boolean }) => void }) {
   const [email, setEmail] = useState('');
   const [password, setPassword] = useState('');
   const [code, setCode] = useState('');

@@ -1,4 +1,4 @@
-import { useMutation, useQuery } from '@tanstack/react-query';
+import { useMutation, useQuery, useQueryClient } from '@tanstack/react-query';
 import { type FormEvent, type ReactNode, useCallback, useEffect, useRef, useState } from 'react';
 import { PASSWORD_MAX } from '../../../shared/rules/limits.ts';
 import { Button } from '../../components/Button.tsx';
@@ -46,10 +46,18 @@ export function StepUpProvider({ children }: { children: ReactNode }) {
 
 function StepUpDialog({ onAnswer }: { onAnswer: Answer }) {
   const { data: session } = useQuery({ ...sessionQuery, enabled: false });
+  const client = useQueryClient();
   const enrolled = session?.secondFactor.enrolled ?? false;
   const [password, setPassword] = useState('');
   const [code, setCode] = useState('');
-  const proof = useMutation({ mutationFn: proveIdentity, onSuccess: () => onAnswer(true) });
+  const proof = useMutation({
+    mutationFn: async (given: { password: string; code?: string }) => {
+      await proveIdentity(given);
+      // The proof gives the session a new id, and with it a new token for what is repeated next.
+      await client.fetchQuery({ ...sessionQuery, staleTime: 0 });
+    },
+    onSuccess: () => onAnswer(true),
+  });
 
   const submit = (event: FormEvent) => {
     event.preventDefault();

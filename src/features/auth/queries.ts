@@ -1,8 +1,8 @@
 import { queryOptions } from '@tanstack/react-query';
+import type { AcceptInvitation, DeviceView, Enrolment, InvitationView } from '../../../shared/api/auth.ts';
 import type { Language } from '../../../shared/api/common.ts';
 import type { SessionView } from '../../../shared/api/session.ts';
 import { apiGet, apiSend, keepCsrf } from '../../lib/api.ts';
-import type { AcceptInvitation, DeviceView, Enrolment, InvitationView } from './assumed.ts';
 
 /** Who is signed in. Fails with `ApiError` 401 when nobody is. Keeps the session's token for later changes. */
 export const sessionQuery = queryOptions({
@@ -22,7 +22,7 @@ interface SignIn {
 }
 
 /** Signs in. Fails with code `code_needed` when the second factor's code is missing, and is then sent again with it. */
-export const signIn = (given: SignIn) => apiSend('POST', '/session', given);
+export const signIn = (given: SignIn) => apiSend<{ endedOldest: boolean }>('POST', '/session', given);
 
 /** Ends this session. */
 export const signOut = () => apiSend('DELETE', '/session');

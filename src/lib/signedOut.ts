@@ -1,5 +1,5 @@
-import { keepCsrf } from '../lib/api.ts';
-import { queryClient } from '../lib/queryClient.ts';
+import { keepCsrf } from './api.ts';
+import { queryClient } from './queryClient.ts';
 
 const tabs = new BroadcastChannel('quayword.session');
 
