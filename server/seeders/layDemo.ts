@@ -5,12 +5,12 @@ import {
   ROLE_NAMES,
   type VesselRole,
 } from '../../shared/rules/permissions.ts';
+import { hashPassword } from '../auth/passwords.ts';
 import type { Tx } from '../db/connection.ts';
 import { appendLog, type LogEvent } from '../handovers/appendLog.ts';
 import type { Services } from '../services.ts';
 import { minutes } from './calendar.ts';
 import { dice } from './dice.ts';
-import { hashPassword } from './hashPassword.ts';
 import type { LaidVessel, Laying } from './layVessel.ts';
 import { layOrdinary } from './ordinary.ts';
 import { DEMO_PEOPLE, type DemoPerson, demoPassword } from './people.ts';
