@@ -123,8 +123,11 @@ function rule(pen: Pen, y: number): void {
 /** Flag, vessel and welcome on the left, the guest and cabin on the right; returns its lower end. */
 function drawHeading(pen: Pen, card: PreparedCard): number {
   const person = drawPerson(pen, card);
-  const room = { width: WIDTH - MARGIN - NAME_X - person, height: 40, mostLines: 2 };
-  const name = must('vessel name', fitSentence(card.vesselName, 600, { ...room, largest: 17, smallest: 9 }));
+  const room = { width: WIDTH - MARGIN - NAME_X - person, height: 40, mostLines: 4 };
+  const name = must(
+    'vessel name',
+    fitSentence(card.vesselName, 600, { ...room, largest: 17, smallest: 6.5 }),
+  );
   const welcome = must('welcome line', fitWelcome(card, { ...room, largest: 7.5, smallest: 6 }));
   const first = HEAD_TOP + name.size * 0.72;
   name.lines.forEach((line, i) => {
@@ -146,11 +149,11 @@ const DESCENT = 0.25;
 
 /** Returns the width it takes from the heading, with the gap beside it. */
 function drawPerson(pen: Pen, card: PreparedCard): number {
-  const room = { width: INNER * 0.36, height: 20, mostLines: 2 };
+  const room = { width: INNER * 0.36, height: 26, mostLines: 4 };
   const lines: { text: string; size: number; weight: 400 | 500 }[] = [];
   const add = (field: 'guest name' | 'cabin', text: string, weight: 400 | 500, largest: number) => {
     if (text === '') return;
-    const fitted = must(field, fitText(text, weight, { ...room, largest, smallest: 5.5 }));
+    const fitted = must(field, fitText(text, weight, { ...room, largest, smallest: 5 }));
     for (const line of fitted.lines) lines.push({ text: line.trim(), size: fitted.size, weight });
   };
   add('guest name', card.guestName, 500, 8.5);

@@ -86,8 +86,11 @@ function drawJoinBlock(pen: Pen, card: PreparedCard, x: number): void {
 /** The back without the guest's name: flag, vessel, who it is for, and what to do with the card. */
 export function drawWalletBack(pen: Pen, card: PreparedCard, bleed: number): void {
   drawNeatline(pen, WIDTH, NEATLINE, bleed);
-  const room = { width: WIDTH - 2 * MARGIN, height: 32, mostLines: 2 };
-  const name = must('vessel name', fitSentence(card.vesselName, 600, { ...room, largest: 15, smallest: 8 }));
+  const room = { width: WIDTH - 2 * MARGIN, height: 32, mostLines: 3 };
+  const name = must(
+    'vessel name',
+    fitSentence(card.vesselName, 600, { ...room, largest: 15, smallest: 6.5 }),
+  );
   const welcome = must('welcome line', fitWelcome(card, { ...room, largest: 6.75, smallest: 5.5 }));
   const handBack = must(
     'printed wording',
@@ -127,9 +130,9 @@ function drawCaution(pen: Pen, card: PreparedCard): void {
 export function drawWalletGuest(pen: Pen, guestName: string, cabin: string): void {
   const text = [guestName, cabin].filter((part) => part !== '').join(', ');
   if (text === '') return;
-  const room = { width: WIDTH - 2 * MARGIN, height: 8, mostLines: 1, largest: 6, smallest: 4.5 };
-  const { size } = must('guest name', fitText(text, 400, room));
-  pen.centred(WIDTH / 2, FOOT_BASELINE, size, 400, INK, text);
+  const room = { width: WIDTH - 2 * MARGIN, height: 10, mostLines: 2, largest: 6, smallest: 4 };
+  const fitted = must('guest name', fitSentence(text, 400, room));
+  drawCentred(pen, fitted, 400, INK, FOOT_BASELINE - blockHeight(fitted));
 }
 
 /** Returns the last baseline. */
