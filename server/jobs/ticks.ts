@@ -1,8 +1,13 @@
 import { schedule } from 'node-cron';
+import { purgeRetired } from '../rotations/purge.ts';
+import { sweep } from '../rotations/sweep.ts';
 import type { Services } from '../services.ts';
 
 /** What happens on the clock, by name; each finds work and does it once even on several servers. */
-const TICKS: Record<string, { cron: string; run: (services: Services) => Promise<unknown> }> = {};
+const TICKS: Record<string, { cron: string; run: (services: Services) => Promise<unknown> }> = {
+  rotations: { cron: '*/15 * * * * *', run: sweep },
+  purge: { cron: '7 * * * *', run: purgeRetired },
+};
 
 export interface Ticks {
   stop(): Promise<void>;

@@ -97,6 +97,29 @@ export const rotationView = z.strictObject({
 });
 export type RotationView = z.infer<typeof rotationView>;
 
+export const rotationList = z.strictObject({
+  /** Planned, staged and under way, soonest first. */
+  calendar: z.array(rotationSummary),
+  history: z.array(rotationSummary),
+  /** Cursor of the next page of the history. */
+  after: z.string().nullable(),
+});
+export type RotationList = z.infer<typeof rotationList>;
+
+export const entrySheet = z.strictObject({
+  rotationId: id,
+  ssid: z.string(),
+  security,
+  hidden: z.boolean(),
+  passphrase: z.string(),
+  /** The passphrase cut where the eye may rest; joined they are the passphrase. */
+  parts: z.array(z.string()),
+  /** True when this puts the passphrase before back. */
+  goingBack: z.boolean(),
+  accessPoints: z.array(accessPointOutcome),
+});
+export type EntrySheet = z.infer<typeof entrySheet>;
+
 export const listRotations = contract({
   name: 'rotations.list',
   method: 'GET',
@@ -105,13 +128,7 @@ export const listRotations = contract({
   access: viewing,
   params: vesselParams,
   query: pageQuery.extend({ networkId: id.optional() }),
-  response: z.strictObject({
-    /** Planned, staged and under way, soonest first. */
-    calendar: z.array(rotationSummary),
-    history: z.array(rotationSummary),
-    /** Cursor of the next page of the history. */
-    after: z.string().nullable(),
-  }),
+  response: rotationList,
 });
 
 export const readRotation = contract({
@@ -206,18 +223,7 @@ export const openSheet = contract({
   access: entering,
   secret: true,
   params: rotationParams,
-  response: z.strictObject({
-    rotationId: id,
-    ssid: z.string(),
-    security,
-    hidden: z.boolean(),
-    passphrase: z.string(),
-    /** The passphrase cut where the eye may rest; joined they are the passphrase. */
-    parts: z.array(z.string()),
-    /** True when this puts the passphrase before back. */
-    goingBack: z.boolean(),
-    accessPoints: z.array(accessPointOutcome),
-  }),
+  response: entrySheet,
 });
 
 /** `secret` although it answers none: nothing derived from what was typed may be kept for repeats. */

@@ -1,0 +1,98 @@
+import { randomUUID } from 'node:crypto';
+import type { EntrySheet } from '../../shared/api/rotations.ts';
+import { AppError } from '../errors.ts';
+import { appendLog } from '../handovers/appendLog.ts';
+import { openPassphrase } from '../passphrases/sealPassphrase.ts';
+import { byActor, requireFresh, type VerbContext } from './changeNow.ts';
+import { crossingUntil, SHEET_REPORTS_WITHIN_MS } from './handOut.ts';
+import { type KnownRotation, lockRotation } from './lockRotation.ts';
+import { presentTargets } from './present.ts';
+import { rotationEvent, takeStep } from './takeStep.ts';
+
+/**
+ * Opens the entry sheet. "Handed out" is stored, the opening is in the log and the opener among the holders
+ * before the passphrase is opened, and the request's transaction commits before its first octet is answered.
+ */
+export async function openSheet(context: VerbContext, rotationId: string): Promise<EntrySheet> {
+  const { services, tx, actor, now } = context;
+  const by = byActor(context);
+  const known = await lockRotation(services, tx, actor.vesselId ?? '', rotationId);
+  if (known.audience === 'owner') requireFresh(context);
+  let open = known;
+  const { state } = known.rotation;
+  if (state === 'staged' && known.rotation.driver !== 'by_hand') {
+    throw new AppError(
+      'not_now',
+      'The boat carries this change out by itself when it is due. The entry sheet opens if that fails.',
+    );
+  }
+  if (state === 'staged' || (known.rotation.handedOutAt === null && state === 'needs_somebody')) {
+    const crossing =
+      known.carriesEquipment && (await crossingUntil(services, tx, known.vesselId, now)) !== null;
+    const reportBy = new Date(now.getTime() + SHEET_REPORTS_WITHIN_MS);
+    open = await takeStep(services, tx, known, { kind: 'handOut', reportBy, crossing }, by);
+  } else if (!['handed_out', 'applying', 'unknown', 'needs_somebody'].includes(state)) {
+    throw new AppError(
+      'conflict',
+      'There is nothing to enter for this change just now. Reload to see where it stands.',
+    );
+  }
+  const { to, from } = open.rotation;
+  if (to === null) throw new AppError('conflict', 'This change has no passphrase yet.');
+  open = await takeStep(services, tx, open, { kind: 'disclose', way: 'officer' }, by);
+  await appendLog(services, tx, [rotationEvent(open, 'rotation.sheet_opened', by)]);
+  await recordHolder(context, open, to);
+  const passphrase = await openPassphrase(services, tx, to);
+  return {
+    rotationId: open.id,
+    ssid: open.ssid,
+    security: open.security,
+    hidden: open.hidden,
+    passphrase,
+    parts: partsForReading(passphrase),
+    goingBack: from !== null && (await cameBefore(context, to, from)),
+    accessPoints: await presentTargets(services, tx, open.id),
+  };
+}
+
+/** Whether the target is older than what it replaces: a change that goes back. */
+async function cameBefore({ services, tx }: VerbContext, to: string, from: string): Promise<boolean> {
+  const row = await services.db.row<{ back: boolean }>(
+    tx,
+    'SELECT t.generation < f.generation AS back FROM passphrases t, passphrases f WHERE t.id = $to AND f.id = $from',
+    { to, from },
+  );
+  return row?.back ?? false;
+}
+
+/** Words with their hyphens; anything else in fours. Joined they are the passphrase. */
+export function partsForReading(passphrase: string): string[] {
+  const words = passphrase.split(/(?<=-)/);
+  return words.length >= 3 ? words : (passphrase.match(/.{1,4}/gs) ?? [passphrase]);
+}
+
+async function recordHolder(
+  { services, tx, actor, now }: VerbContext,
+  known: KnownRotation,
+  passphraseId: string,
+) {
+  const bind = {
+    vessel: known.vesselId,
+    network: known.networkId,
+    passphrase: passphraseId,
+    person: actor.personId,
+    now,
+  };
+  await services.db.run(
+    tx,
+    `INSERT INTO handovers(id, vessel_id, network_id, passphrase_id, holder_kind, holder_id, channel, by_person, at)
+     VALUES ($id, $vessel, $network, $passphrase, 'person', $person, 'entry_sheet', $person, $now) ON CONFLICT DO NOTHING`,
+    { ...bind, id: randomUUID() },
+  );
+  await services.db.run(
+    tx,
+    `INSERT INTO holders(passphrase_id, holder_kind, holder_id, vessel_id, network_id, since, through)
+     VALUES ($passphrase, 'person', $person, $vessel, $network, $now, 'entry_sheet') ON CONFLICT DO NOTHING`,
+    bind,
+  );
+}
