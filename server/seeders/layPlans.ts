@@ -47,7 +47,6 @@ export function layPlans(
       mode: 'graceful',
       driver: vessel.plan.driver,
       epoch: 1,
-      from_passphrase_id: network.passphraseId,
       planned_by: 'plan',
       reasons: plan.reasons,
       due_at: plan.dueAt,
@@ -62,7 +61,7 @@ export function layPlans(
       at: now,
       networkId: network.id,
       subject: { kind: 'rotation', id },
-      body: { audience: network.audience, dueAt: plan.dueAt.toISOString() },
+      body: { dueAt: plan.dueAt.toISOString(), why: plan.reasons[0]?.code ?? 'age_limit' },
     });
   }
 }

@@ -1,5 +1,6 @@
 import { randomInt, randomUUID } from 'node:crypto';
 import type { Security } from '../../shared/api/common.ts';
+import { checkPassphrase } from '../../shared/rules/passphrase.ts';
 import { roughGuess } from '../../shared/rules/strength.ts';
 import { generate } from '../passphrases/generate.ts';
 import { contextWords, scoreTyped } from '../passphrases/score.ts';
@@ -9,32 +10,39 @@ import { minutes } from './calendar.ts';
 import type { Laying, NetworkPlan } from './layVessel.ts';
 
 const DAY_MINUTES = 1440;
+/** What people make up that is guessed in about so long: words run together and digits (measured by the scorer). */
+const SHAPES = {
+  hours: { words: 2, digits: 3 },
+  months: { words: 3, digits: 2 },
+  years: { words: 3, digits: 4 },
+} as const;
+/** Between four and eight of ten draws fit. */
 const TRIES = 60;
 
 /**
- * A passphrase as people make them up, that the scorer says takes about `wanted` to guess ("hours", "years")
- * with the vessel's own words known. Drawn anew from `crypto` each time; the last draw where none fits.
+ * A passphrase as people make them up, that the scorer says takes about `wanted` to guess with the vessel's own
+ * words known. Drawn anew from `crypto` each time.
+ * @throws Error when none of many draws fits, which does not happen by chance.
  */
 export async function madeUp(
-  wanted: string,
+  wanted: keyof typeof SHAPES,
   security: Security,
   vesselWords: readonly string[],
 ): Promise<{ passphrase: string; bits: number }> {
   const context = contextWords(vesselWords);
-  let latest = { passphrase: '', bits: 0 };
+  const shape = SHAPES[wanted];
   for (let attempt = 0; attempt < TRIES; attempt++) {
-    const words = Array.from(
-      { length: 1 + (attempt % 3) },
-      () => WORDS[randomInt(WORDS.length)] ?? 'harbour',
-    );
-    const passphrase = `${words.join('')}${randomInt(10, 100)}`;
-    if (passphrase.length < 9 || passphrase.length > 40) continue;
-    const { bits } = await scoreTyped(passphrase, context);
-    latest = { passphrase, bits: Math.round(bits * 100) / 100 };
-    if (roughGuess(security, latest.bits).startsWith(wanted)) return latest;
+    const words = Array.from({ length: shape.words }, () => WORDS[randomInt(WORDS.length)] ?? '');
+    const passphrase = words.join('') + randomInt(10 ** (shape.digits - 1), 10 ** shape.digits);
+    if (!checkPassphrase(passphrase).ok) continue;
+    const bits = rounded((await scoreTyped(passphrase, context)).bits);
+    if (roughGuess(security, bits).startsWith(wanted)) return { passphrase, bits };
   }
-  return latest;
+  throw new Error(`No made-up passphrase takes ${wanted} to guess`);
 }
+
+/** As the column keeps bits: two decimals. */
+export const rounded = (bits: number): number => Math.round(bits * 100) / 100;
 
 export interface SealedGenerations {
   readonly live: string;
@@ -63,7 +71,7 @@ export async function sealGenerations(
       networkId,
       passphrase: made.passphrase,
       origin: 'generated',
-      bits: Math.round(made.bits * 100) / 100,
+      bits: rounded(made.bits),
       now: beforeLiveAt,
     });
     // Retired ones are forgotten once nothing aboard can be running them any more.
@@ -88,7 +96,7 @@ export async function sealGenerations(
     networkId,
     passphrase: made.passphrase,
     origin: made.origin,
-    bits: Math.round(made.bits * 100) / 100,
+    bits: rounded(made.bits),
     now: network.liveAt,
   });
   await db.run(tx, 'UPDATE passphrases SET live_at = $liveAt WHERE id = $id', {

@@ -3,6 +3,7 @@ import { generate } from '../passphrases/generate.ts';
 import { sealPassphrase } from '../passphrases/sealPassphrase.ts';
 import { minutes } from './calendar.ts';
 import { type LaidVessel, type Laying, networkOf } from './layVessel.ts';
+import { rounded } from './passphrases.ts';
 
 const DAY = 1440;
 
@@ -18,7 +19,7 @@ export async function laySilentChange(laying: Laying, vessel: LaidVessel, silent
     networkId: network.id,
     passphrase: made.passphrase,
     origin: 'generated',
-    bits: Math.round(made.bits * 100) / 100,
+    bits: rounded(made.bits),
     now: minutes(due, -DAY),
   });
   const id = randomUUID();

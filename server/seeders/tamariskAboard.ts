@@ -89,7 +89,6 @@ export function layOwnersChange(
     mode: 'graceful',
     driver: vessel.plan.driver,
     epoch: 1,
-    from_passphrase_id: network.passphraseId,
     planned_by: 'person',
     reasons: [{ code: 'person', why: 'routine' }],
     due_at: dueAt,
