@@ -3,12 +3,6 @@ import PgBoss from 'pg-boss';
 import { QUEUES } from '../jobs/queues.ts';
 import { migrations } from '../migrations/index.ts';
 
-export interface Migration {
-  readonly name: string;
-  /** Run once, in one transaction, as the owning role. */
-  readonly sql: string;
-}
-
 export interface MigrateOptions {
   /** Connection of the role that owns the tables. */
   readonly ownerUrl: string;

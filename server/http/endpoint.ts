@@ -1,6 +1,12 @@
 import type { Request, Response } from 'express';
 import type { z } from 'zod';
-import { dealerMay, may } from '../../shared/rules/permissions.ts';
+import {
+  AUDIENCES,
+  type Audience,
+  dealerMay,
+  may,
+  type VesselAction,
+} from '../../shared/rules/permissions.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, forbidden, notFound } from '../errors.ts';
 import type { Services } from '../services.ts';
@@ -79,6 +85,7 @@ export function endpoint<C extends AnyContract, P = undefined>(
         const actor = await resolveActor(services, tx, sessionId, place);
         if (!actor) throw signInFirst();
         admitActor(services, contract, actor);
+        await admitAudience(services, tx, contract, actor, request);
         return actor;
       };
       const base = (): Base<C> => ({
@@ -178,6 +185,35 @@ function admitActor(services: Services, contract: AnyContract, actor: Actor): vo
 
 const isFile = (reply: unknown): reply is FileReply =>
   typeof reply === 'object' && reply !== null && 'filename' in reply && 'contentType' in reply;
+
+/**
+ * Where a route's actions differ by audience and its path names the network, the action for that network's audience
+ * decides, before anything of the request is looked at.
+ */
+async function admitAudience(
+  services: Services,
+  tx: Tx,
+  contract: AnyContract,
+  actor: Actor,
+  request: Request,
+): Promise<void> {
+  const { networkId } = request.params;
+  if (contract.access.kind !== 'vessel' || typeof networkId !== 'string') return;
+  const actions: readonly VesselAction[] = contract.access.actions;
+  if (!actions.some((action) => AUDIENCES.some((audience) => action.endsWith(`.${audience}`)))) return;
+  if (!UUID.test(networkId)) throw notFound();
+  const network = await services.db.row<{ audience: Audience }>(
+    tx,
+    'SELECT audience FROM networks WHERE id = $network AND vessel_id = $vessel AND removed_at IS NULL',
+    { network: networkId, vessel: actor.vesselId },
+  );
+  if (!network) throw notFound();
+  const exact = actions.filter((action) => action.endsWith(`.${network.audience}`));
+  if (!exact.some((action) => may(actor.roles, action))) {
+    services.log.warn({ event: 'denied', route: contract.name, person: actor.personId }, 'denied');
+    throw forbidden();
+  }
+}
 
 /** Only what the response schema names goes out; a field it does not know is an error in the code. */
 function present(contract: AnyContract, reply: unknown): Presented {

@@ -1,4 +1,5 @@
 import { schedule } from 'node-cron';
+import { mailTransport, sweepMail } from '../mail/sendMail.ts';
 import { purgeRetired } from '../rotations/purge.ts';
 import { sweep } from '../rotations/sweep.ts';
 import type { Services } from '../services.ts';
@@ -6,6 +7,7 @@ import type { Services } from '../services.ts';
 /** What happens on the clock, by name; each finds work and does it once even on several servers. */
 const TICKS: Record<string, { cron: string; run: (services: Services) => Promise<unknown> }> = {
   rotations: { cron: '*/15 * * * * *', run: sweep },
+  mail: { cron: '*/30 * * * * *', run: (services) => sweepMail(services, mailTransport(services)) },
   purge: { cron: '7 * * * *', run: purgeRetired },
 };
 

@@ -1,4 +1,4 @@
-import type { Migration } from '../db/migrate.ts';
+import type { Migration } from '../db/migration.ts';
 
 /** People, dealers, vessels and who belongs where. */
 export const migration: Migration = {

@@ -1,4 +1,4 @@
-import type { Migration } from '../db/migrate.ts';
+import type { Migration } from '../db/migration.ts';
 
 /** Networks, policies, passphrases, rotations and what each access point was seen to run. */
 export const migration: Migration = {

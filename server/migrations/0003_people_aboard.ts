@@ -1,4 +1,4 @@
-import type { Migration } from '../db/migrate.ts';
+import type { Migration } from '../db/migration.ts';
 
 /** The calendar, parties and guests, crew, cards, holders, and the log. */
 export const migration: Migration = {

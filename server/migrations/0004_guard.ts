@@ -1,4 +1,4 @@
-import type { Migration } from '../db/migrate.ts';
+import type { Migration } from '../db/migration.ts';
 
 /** Tables of one vessel that the vessel's own scope sees. */
 const OF_VESSEL = [

@@ -1,4 +1,4 @@
-import type { Migration } from '../db/migrate.ts';
+import type { Migration } from '../db/migration.ts';
 
 /** What the clock's sweeps need: when they last looked, and a log head for every vessel to lock from the start. */
 export const migration: Migration = {

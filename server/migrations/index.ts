@@ -1,4 +1,4 @@
-import type { Migration } from '../db/migrate.ts';
+import type { Migration } from '../db/migration.ts';
 import { migration as people } from './0001_people.ts';
 import { migration as networks } from './0002_networks.ts';
 import { migration as aboard } from './0003_people_aboard.ts';
