@@ -59,7 +59,7 @@ interface Body {
   readonly spare: number;
 }
 
-const INSTRUCTION_RISE = 6.4;
+const INSTRUCTION_RISE = 8;
 const BELOW_INSTRUCTION = 14;
 
 /** Null when the password does not fit in what the symbol and the name leave. */
@@ -123,7 +123,7 @@ function rule(pen: Pen, y: number): void {
 /** Flag, vessel and welcome on the left, the guest and cabin on the right; returns its lower end. */
 function drawHeading(pen: Pen, card: PreparedCard): number {
   const person = drawPerson(pen, card);
-  const room = { width: WIDTH - MARGIN - NAME_X - person, height: 40, mostLines: 4 };
+  const room = { width: WIDTH - MARGIN - NAME_X - person, height: 40, mostLines: 5 };
   const name = must(
     'vessel name',
     fitSentence(card.vesselName, 600, { ...room, largest: 17, smallest: 6.5 }),

@@ -13,7 +13,7 @@ export function card(about: Partial<CardInput> = {}): CardInput {
     audience: 'guest',
     ssid,
     passphrase,
-    payload: wifiPayload({ ssid, passphrase, security: 'wpa2', hidden: false }),
+    payload: about.payload ?? wifiPayload({ ssid, passphrase, security: 'wpa2', hidden: false }),
     language,
     validFrom: validFromLine(language, '2026-06-14T09:00:00Z', 'Europe/Zagreb'),
     guestName: null,
