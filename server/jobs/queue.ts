@@ -36,7 +36,8 @@ export async function startQueue(
         db: {
           executeSql: async (sql: string, values: unknown[]) => {
             const rows = await db.sequelize.query(sql, {
-              bind: values,
+              // The queue leaves out what is not set; here every place must hold something.
+              bind: values.map((value) => value ?? null),
               transaction: tx,
               type: QueryTypes.SELECT,
             });
