@@ -4,6 +4,7 @@ import { migration as networks } from './0002_networks.ts';
 import { migration as aboard } from './0003_people_aboard.ts';
 import { migration as guard } from './0004_guard.ts';
 import { migration as clockwork } from './0005_clockwork.ts';
+import { migration as takesOver } from './0006_takes_over.ts';
 
 /** In the order in which they run. A migration that has run anywhere is never edited again. */
-export const migrations: readonly Migration[] = [people, networks, aboard, guard, clockwork];
+export const migrations: readonly Migration[] = [people, networks, aboard, guard, clockwork, takesOver];

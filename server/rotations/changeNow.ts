@@ -138,12 +138,12 @@ async function bringForward(
     mode,
     now,
   };
-  const open = await db.row<{ id: string; state: RotationState }>(
+  const open = await db.row<{ id: string; state: RotationState; takes_over: boolean }>(
     tx,
-    'SELECT id, state FROM rotations WHERE network_id = $network AND vessel_id = $vessel AND state = ANY($open) FOR UPDATE',
+    'SELECT id, state, takes_over FROM rotations WHERE network_id = $network AND vessel_id = $vessel AND state = ANY($open) FOR UPDATE',
     { network: networkId, vessel: vesselId, open: [...OPEN_STATES] },
   );
-  if (open && open.state !== 'planned' && open.state !== 'staged') {
+  if (open && (open.takes_over || (open.state !== 'planned' && open.state !== 'staged'))) {
     throw new AppError(
       'conflict',
       "This network's change is under way already. Finish it, or give it up, before starting another.",

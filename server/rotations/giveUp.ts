@@ -86,9 +86,9 @@ async function insertBack(
   await db.run(
     tx,
     `INSERT INTO rotations(id, vessel_id, network_id, state, mode, driver, epoch, ticket, from_passphrase_id, to_passphrase_id,
-       planned_by, planned_by_person, reasons, due_at, deadline_at, staged_at, created_at, updated_at)
+       planned_by, planned_by_person, reasons, due_at, takes_over, deadline_at, staged_at, created_at, updated_at)
      VALUES ($id, $vessel, $network, $state, $mode, $driver, $epoch, $ticket, $from, $to, 'person', $person, $reasons,
-       $due, $deadline, $now, $now, $now)`,
+       $due, true, $deadline, $now, $now, $now)`,
     {
       id,
       vessel: known.vesselId,

@@ -43,6 +43,7 @@ interface RotationRow {
   planned_by: 'plan' | 'person';
   reasons: PlanReason[];
   due_at: Date;
+  takes_over: boolean;
   deadline_at: Date | null;
   occurrence: string | null;
   handed_out_at: Date | null;
@@ -128,6 +129,7 @@ async function readLocked(
       from: row.from_passphrase_id,
       to: row.to_passphrase_id,
       dueAt: row.due_at,
+      takesOver: row.takes_over,
       handedOutAt: row.handed_out_at,
       reportBy: row.report_by,
       targets: targets.map((target) => ({

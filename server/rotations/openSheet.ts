@@ -1,11 +1,11 @@
-import { randomUUID } from 'node:crypto';
 import type { EntrySheet } from '../../shared/api/rotations.ts';
 import { AppError } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
+import { recordHandover } from '../handovers/recordHandover.ts';
 import { openPassphrase } from '../passphrases/sealPassphrase.ts';
 import { byActor, requireFresh, type VerbContext } from './changeNow.ts';
 import { crossingUntil, SHEET_REPORTS_WITHIN_MS } from './handOut.ts';
-import { type KnownRotation, lockRotation } from './lockRotation.ts';
+import { lockRotation } from './lockRotation.ts';
 import { presentTargets } from './present.ts';
 import { rotationEvent, takeStep } from './takeStep.ts';
 
@@ -41,7 +41,15 @@ export async function openSheet(context: VerbContext, rotationId: string): Promi
   if (to === null) throw new AppError('conflict', 'This change has no passphrase yet.');
   open = await takeStep(services, tx, open, { kind: 'disclose', way: 'officer' }, by);
   await appendLog(services, tx, [rotationEvent(open, 'rotation.sheet_opened', by)]);
-  await recordHolder(context, open, to);
+  await recordHandover(services, tx, {
+    vesselId: open.vesselId,
+    networkId: open.networkId,
+    passphraseId: to,
+    holder: { kind: 'person', id: actor.personId },
+    channel: 'entry_sheet',
+    byPerson: actor.personId,
+    at: now,
+  });
   const passphrase = await openPassphrase(services, tx, to);
   return {
     rotationId: open.id,
@@ -69,30 +77,4 @@ async function cameBefore({ services, tx }: VerbContext, to: string, from: strin
 export function partsForReading(passphrase: string): string[] {
   const words = passphrase.split(/(?<=-)/);
   return words.length >= 3 ? words : (passphrase.match(/.{1,4}/gs) ?? [passphrase]);
-}
-
-async function recordHolder(
-  { services, tx, actor, now }: VerbContext,
-  known: KnownRotation,
-  passphraseId: string,
-) {
-  const bind = {
-    vessel: known.vesselId,
-    network: known.networkId,
-    passphrase: passphraseId,
-    person: actor.personId,
-    now,
-  };
-  await services.db.run(
-    tx,
-    `INSERT INTO handovers(id, vessel_id, network_id, passphrase_id, holder_kind, holder_id, channel, by_person, at)
-     VALUES ($id, $vessel, $network, $passphrase, 'person', $person, 'entry_sheet', $person, $now) ON CONFLICT DO NOTHING`,
-    { ...bind, id: randomUUID() },
-  );
-  await services.db.run(
-    tx,
-    `INSERT INTO holders(passphrase_id, holder_kind, holder_id, vessel_id, network_id, since, through)
-     VALUES ($passphrase, 'person', $person, $vessel, $network, $now, 'entry_sheet') ON CONFLICT DO NOTHING`,
-    bind,
-  );
 }

@@ -30,6 +30,7 @@ export interface SummaryRow {
   live_at: Date | null;
   ended_at: Date | null;
   handed_out_at: Date | null;
+  takes_over: boolean;
   created_at: Date;
   verified: number;
   of: number;
@@ -55,7 +56,8 @@ export function presentSummary(row: SummaryRow): RotationSummary {
       driver: row.driver,
       verified: row.verified,
       of: row.of,
-      handedOut: row.handed_out_at !== null,
+      handedOut: row.handed_out_at !== null || row.takes_over,
+      takesOver: row.takes_over,
     }),
     mode: row.mode,
     driver: row.driver,
@@ -137,6 +139,7 @@ export async function viewRotation(
     from: row.from_passphrase_id,
     to: row.to_passphrase_id,
     dueAt: row.due_at,
+    takesOver: row.takes_over,
     handedOutAt: row.handed_out_at,
     reportBy: row.report_by,
     targets: accessPoints.map(({ id, seen, evidence }) => ({ accessPointId: id, seen, evidence })),
@@ -146,7 +149,7 @@ export async function viewRotation(
   };
   const plans = may(actor.roles, planAction(row.audience));
   const enters = may(actor.roles, 'rotation.enter');
-  const early = row.state === 'planned' || row.state === 'staged';
+  const early = (row.state === 'planned' || row.state === 'staged') && !row.takes_over;
   return {
     ...presentSummary(row),
     ticket: rotation.ticket?.number ?? null,

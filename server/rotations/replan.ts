@@ -20,6 +20,7 @@ interface OpenRow {
   state: RotationState;
   planned_by: 'plan' | 'person';
   due_at: Date;
+  takes_over: boolean;
 }
 
 /**
@@ -44,10 +45,10 @@ export async function replanNetwork(
   await db.run(tx, 'SELECT 1 FROM networks WHERE id = $network FOR UPDATE', { network: networkId });
   const open = await db.row<OpenRow>(
     tx,
-    `SELECT id, state, planned_by, due_at FROM rotations WHERE network_id = $network AND state = ANY($open) FOR UPDATE`,
+    `SELECT id, state, planned_by, due_at, takes_over FROM rotations WHERE network_id = $network AND state = ANY($open) FOR UPDATE`,
     { network: networkId, open: [...OPEN_STATES] },
   );
-  if (open && open.state !== 'planned' && open.state !== 'staged') return null;
+  if (open && (open.takes_over || (open.state !== 'planned' && open.state !== 'staged'))) return null;
   const facts = await planFacts(services, tx, networkId, now);
   if (!facts) return null;
   const plan = planNext(facts.input);

@@ -137,6 +137,7 @@ function stagedRow(row: StageRow, toId: string, now: Date) {
     from: row.from_id,
     to: null,
     dueAt: row.due_at,
+    takesOver: false,
     handedOutAt: null,
     reportBy: null,
     targets: [],

@@ -86,8 +86,7 @@ export function planNext(input: PlanInput): Plan {
     ? earlier(ageReachedAt, new Date(exposure.at.getTime() + EXPOSURE_LIMIT_MS))
     : ageReachedAt;
   const putOffFrom = input.putOffFrom ?? null;
-  const floor =
-    putOffFrom && putOffFrom.getTime() >= now.getTime() ? new Date(putOffFrom.getTime() + 1) : now;
+  const floor = putOffFrom ? later(now, new Date(putOffFrom.getTime() + PUT_OFF_MS)) : now;
   const blocked = blockedSpans(input);
 
   const candidates = [

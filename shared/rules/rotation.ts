@@ -17,6 +17,8 @@ export interface Rotation {
   /** The new passphrase; null until staged, and the same for ever after. */
   readonly to: string | null;
   readonly dueAt: Date;
+  /** Took over from a change that was handed out, so access points may run either passphrase from its start. */
+  readonly takesOver: boolean;
   /** When the first octet of it may have left the server; null before. */
   readonly handedOutAt: Date | null;
   readonly reportBy: Date | null;
@@ -143,8 +145,9 @@ export function isDisclosed(rotation: Pick<Rotation, 'driver' | 'ways'>): boolea
 export function toTry(rotation: Rotation, now: Date): readonly ('new' | 'old')[] {
   const old: readonly 'old'[] = rotation.from === null ? [] : ['old'];
   switch (rotation.state) {
-    case 'planned':
     case 'staged':
+      return rotation.takesOver ? ['new', ...old] : old;
+    case 'planned':
     case 'cancelled':
       return old;
     case 'live':
@@ -193,6 +196,7 @@ export function goingBack(
     from: rotation.to,
     to: rotation.from,
     dueAt: now,
+    takesOver: true,
     handedOutAt: null,
     reportBy: null,
     targets: accessPointIds.map((accessPointId) => ({ accessPointId, seen: null, evidence: null })),

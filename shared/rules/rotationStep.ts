@@ -22,7 +22,7 @@ export function step(rotation: Rotation, action: Action, now: Date): Outcome {
     case 'move':
       return move(rotation, action.dueAt, now);
     case 'cancel':
-      return rotation.state === 'planned' || rotation.state === 'staged'
+      return isEarly(rotation)
         ? enter(rotation, {}, 'cancelled')
         : refuse(
             'not_now',
@@ -63,6 +63,10 @@ export function step(rotation: Rotation, action: Action, now: Date): Outcome {
       return restore(rotation);
   }
 }
+
+/** Nothing of it is aboard yet: not planned or staged to go back from one that was. */
+const isEarly = (rotation: Rotation): boolean =>
+  (rotation.state === 'planned' || rotation.state === 'staged') && !rotation.takesOver;
 
 const isOpen = (rotation: Rotation): boolean =>
   (OPEN_STATES as readonly RotationState[]).includes(rotation.state);
@@ -105,7 +109,7 @@ function stage(rotation: Rotation, action: Extract<Action, { kind: 'stage' }>): 
 }
 
 function move(rotation: Rotation, dueAt: Date, now: Date): Outcome {
-  if (rotation.state !== 'planned' && rotation.state !== 'staged') {
+  if (!isEarly(rotation)) {
     return refuse('not_now', 'This change is under way already and cannot be moved.');
   }
   if (dueAt.getTime() < now.getTime()) return refuse('not_now', 'Choose a time that is still to come.');

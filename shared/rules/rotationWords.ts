@@ -7,16 +7,20 @@ interface Told {
   readonly verified: number;
   readonly of: number;
   readonly handedOut: boolean;
+  /** Goes back from a change that was handed out. */
+  readonly takesOver: boolean;
 }
 
 /** A change's state as a sentence people understand; never rounds "not yet known" up or down. */
-export function rotationSentence({ state, driver, verified, of, handedOut }: Told): string {
+export function rotationSentence({ state, driver, verified, of, handedOut, takesOver }: Told): string {
   const points = `${verified} of ${of} access points ${verified === 1 && of === 1 ? 'has' : 'have'} the new passphrase`;
   switch (state) {
     case 'planned':
       return 'Planned. The passphrase in force stays until then.';
     case 'staged':
-      return 'The new passphrase is ready. The one in force stays until the change.';
+      return takesOver
+        ? 'Going back to the passphrase before. Until every access point is confirmed, try both.'
+        : 'The new passphrase is ready. The one in force stays until the change.';
     case 'handed_out':
       return driver === 'by_hand'
         ? 'The entry sheet has been opened. Confirm each access point as you go.'
