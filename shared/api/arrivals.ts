@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { CSV_MAX_ROWS, NAME_MAX } from '../rules/limits.ts';
+import { CSV_MAX_BYTES, CSV_MAX_ROWS, NAME_MAX } from '../rules/limits.ts';
 import { id, instant, language, nameText, vesselParams } from './common.ts';
 import { contract, vessel } from './contract.ts';
 
@@ -133,25 +133,22 @@ export const previewList = contract({
   summary: "Read a party's list without keeping anything of it",
   access: editing,
   params: vesselParams,
-  body: z.union(
-    [
-      z.strictObject({
-        text: z.string().max(2_097_152),
-        dateOrder: dateOrder.optional(),
-        partyId: id.optional(),
-      }),
-      z.strictObject({
-        /** The file as it is: UTF-8, UTF-16 or Latin-1, at most 2 MB. */
-        base64: z
-          .string()
-          .max(2_796_204)
-          .regex(/^[A-Za-z0-9+/]*={0,2}$/, 'Send the file in base64'),
-        dateOrder: dateOrder.optional(),
-        partyId: id.optional(),
-      }),
-    ],
-    'Send the list as text, or the file in base64',
-  ),
+  body: z
+    .strictObject({
+      text: z.string().max(CSV_MAX_BYTES, 'Send at most 2 MB').optional(),
+      /** The file as it is: UTF-8, UTF-16 or Latin-1, at most 2 MB. */
+      base64: z
+        .string()
+        .max(Math.ceil(CSV_MAX_BYTES / 3) * 4, 'Send at most 2 MB')
+        .regex(/^[A-Za-z0-9+/]*={0,2}$/, 'Send the file in base64')
+        .optional(),
+      /** A person's answer where the list does not say which of day and month comes first. */
+      dateOrder: dateOrder.optional(),
+    })
+    .refine((body) => (body.text === undefined) !== (body.base64 === undefined), {
+      path: ['text'],
+      message: 'Send the list as text, or the file in base64',
+    }),
   response: listPreview,
 });
 
@@ -162,16 +159,19 @@ export const importList = contract({
   summary: 'Add the confirmed lines of a list to a party, or to a new one',
   access: editing,
   params: vesselParams,
-  body: z.strictObject({
-    party: z.union(
-      [z.strictObject({ id }), partyForm],
-      'Name the party, or give a new one its name and times',
-    ),
-    rows: z
-      .array(guestRow)
-      .min(1, 'There is nothing to add')
-      .max(CSV_MAX_ROWS, `Add at most ${CSV_MAX_ROWS} guests at a time`),
-  }),
+  body: z
+    .strictObject({
+      partyId: id.optional(),
+      newParty: partyForm.optional(),
+      rows: z
+        .array(guestRow)
+        .min(1, 'There is nothing to add')
+        .max(CSV_MAX_ROWS, `Add at most ${CSV_MAX_ROWS} guests at a time`),
+    })
+    .refine((body) => (body.partyId === undefined) !== (body.newParty === undefined), {
+      path: ['partyId'],
+      message: 'Choose the party, or give a new one its name and times',
+    }),
   response: z.strictObject({ partyId: id, added: z.number().int() }),
   status: 201,
 });

@@ -19,13 +19,6 @@ export const handoverAnswer = z.strictObject({
 });
 export type HandoverAnswer = z.infer<typeof handoverAnswer>;
 
-const toWhom = {
-  networkId: id,
-  channel: z.enum(['card', 'screen']),
-  /** The card in hand; where it is left out, the one printed for this person. */
-  cardId: id.nullable().default(null),
-} as const;
-
 export const handOver = contract({
   name: 'handovers.create',
   method: 'POST',
@@ -33,10 +26,19 @@ export const handOver = contract({
   summary: "Write down that somebody was given a network's passphrase by card or on a screen",
   access: handing,
   params: vesselParams,
-  body: z.union(
-    [z.strictObject({ guestId: id, ...toWhom }), z.strictObject({ crewMemberId: id, ...toWhom })],
-    'Say which guest or crew member, which network, and whether by card or screen',
-  ),
+  body: z
+    .strictObject({
+      guestId: id.optional(),
+      crewMemberId: id.optional(),
+      networkId: id,
+      channel: z.enum(['card', 'screen'], 'Say whether by card or by screen'),
+      /** The card in hand; where it is left out, the one printed for this person. */
+      cardId: id.nullable().default(null),
+    })
+    .refine((body) => (body.guestId === undefined) !== (body.crewMemberId === undefined), {
+      path: ['guestId'],
+      message: 'Say which guest or which crew member it is for',
+    }),
   response: handoverAnswer,
   status: 201,
 });
