@@ -65,9 +65,16 @@ interface FactRow {
 const LIMIT_UNSET_DAYS = 365;
 const ZONE_UNSET = 'UTC';
 
+/** The fleet asks for the departed only, of which the partial index knows all. */
+const DEPARTED_ONLY = `SELECT NULL::int AS holders, count(*)::int AS departed FROM holders
+       WHERE passphrase_id = p.id AND departed_at IS NOT NULL`;
+const ALL_HOLDERS = `SELECT count(*)::int AS holders, count(departed_at)::int AS departed FROM holders
+       WHERE passphrase_id = p.id`;
+
 /**
  * Every network of the dealer's vessels with its live passphrase's facts, in one statement over the partial
- * indexes of what is live, departed and open. `vesselId` narrows it to one vessel; somebody else's gives none.
+ * indexes of what is live, departed and open. Row-level security hides from the planner how many rows there are,
+ * so each step is a lookup by index (`OFFSET 0` keeps it one); joined freely it was quadratic. `vesselId` narrows it to one vessel; somebody else's gives none.
  */
 export async function fleetFacts(
   services: Services,
@@ -80,15 +87,12 @@ export async function fleetFacts(
        (SELECT z.zone FROM ship_zones z WHERE z.vessel_id = v.id AND z.from_at <= $now
         ORDER BY z.from_at DESC LIMIT 1) AS zone,
        n.id AS network_id, n.ssid, n.audience, n.security, n.carries_equipment, o.age_limit_days,
-       p.live_at, p.bits, h.holders, d.departed, l.leaks, r.state, r.due_at, r.reasons
+       p.live_at, p.bits, h.holders, h.departed, l.leaks, r.state, r.due_at, r.reasons
      FROM vessels v
-     LEFT JOIN networks n ON n.vessel_id = v.id AND n.removed_at IS NULL
-     LEFT JOIN policies o ON o.network_id = n.id
+     LEFT JOIN LATERAL (SELECT * FROM networks w WHERE w.vessel_id = v.id AND w.removed_at IS NULL OFFSET 0) n ON true
+     LEFT JOIN LATERAL (SELECT w.age_limit_days FROM policies w WHERE w.network_id = n.id OFFSET 0) o ON true
      LEFT JOIN passphrases p ON p.network_id = n.id AND p.live_at IS NOT NULL AND p.retired_at IS NULL
-     LEFT JOIN LATERAL (SELECT count(*)::int AS departed FROM holders h
-       WHERE h.passphrase_id = p.id AND h.departed_at IS NOT NULL) d ON true
-     LEFT JOIN LATERAL (SELECT count(*)::int AS holders FROM holders h
-       WHERE $one::boolean AND h.passphrase_id = p.id) h ON true
+     LEFT JOIN LATERAL (${where.vesselId === undefined ? DEPARTED_ONLY : ALL_HOLDERS}) h ON true
      LEFT JOIN LATERAL (SELECT count(*)::int AS leaks FROM leaks l
        WHERE l.passphrase_id = p.id AND l.withdrawn_at IS NULL) l ON true
      LEFT JOIN rotations r ON r.network_id = n.id
@@ -98,8 +102,6 @@ export async function fleetFacts(
     {
       dealer: where.dealerId,
       vessel: where.vesselId ?? null,
-      // Counting current holders as well is asked for one vessel only; the fleet needs the departed.
-      one: where.vesselId !== undefined,
       now: where.now,
     },
   );

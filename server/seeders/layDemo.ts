@@ -26,7 +26,8 @@ const DEALER = 'Halden & Roe Marine Systems';
 export interface DemoSignIn {
   readonly name: string;
   readonly role: string;
-  readonly vessel: string | null;
+  /** Their vessel's name, or the dealer's. */
+  readonly vessel: string;
   readonly email: string;
   readonly password: string;
 }
@@ -81,7 +82,7 @@ export async function layDemo(
     const people = signIns.map(({ person, password }) => ({
       name: person.name,
       role: person.roles.map((role) => ROLE_NAMES[role]).join(', '),
-      vessel: person.vessel,
+      vessel: person.vessel ?? DEALER,
       email: person.email,
       password,
     }));
