@@ -2,13 +2,14 @@ import type { Request, Response } from 'express';
 import type { DeviceView } from '../../shared/api/auth.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, invalid, notFound } from '../errors.ts';
-import { type Actor, setSessionCookie } from '../http/session.ts';
+import { type Actor, newToken, setSessionCookie, sha256 } from '../http/session.ts';
 import { queueMail } from '../mail/queueMail.ts';
 import type { Services } from '../services.ts';
-import { hashPassword, passwordMatches, refuseEasyPassword } from './passwords.ts';
-import { endSessions, openSession } from './sessions.ts';
+import { namesAround, refuseEasyPassword } from './easyPasswords.ts';
+import { hashPassword, passwordMatches } from './passwords.ts';
+import { endSessions } from './sessions.ts';
 import { checkSecondFactor } from './signIn.ts';
-import { accountLimit, countFailure, refuseWhileClosed } from './throttle.ts';
+import { countFailure, forgetFailures, proofLimit, refuseWhileClosed } from './throttle.ts';
 
 interface OwnRow {
   id: string;
@@ -17,14 +18,14 @@ interface OwnRow {
   totp_enrolled_at: Date | null;
 }
 
-/** Checks the signed-in person's own password; failures count against their account. */
+/** Checks the signed-in person's own password. Failures count by themselves: guesses of strangers do not keep them out. */
 async function ownPassword(
   services: Services,
   actor: Actor,
   password: string,
   field: 'password' | 'current',
 ): Promise<OwnRow> {
-  const limit = accountLimit(actor.email);
+  const limit = proofLimit(actor.personId);
   await refuseWhileClosed(services, [limit]);
   const row = await services.db.transaction({ kind: 'none' }, (tx) =>
     services.db.row<OwnRow>(
@@ -38,6 +39,7 @@ async function ownPassword(
     await countFailure(services, [limit]);
     throw invalid({ [field]: ['That is not your password.'] });
   }
+  await forgetFailures(services, limit);
   return row;
 }
 
@@ -51,22 +53,32 @@ export async function proveAgain(
   return checkSecondFactor(services, row, given.code);
 }
 
-/** A fresh session in place of this one, so that an id seen before the proof is worth nothing after it. */
+/**
+ * Gives this session a new id, so that one seen before is worth nothing after. A proof makes it fresh; its
+ * absolute end stays where it was.
+ */
 export async function renewSession(
   services: Services,
   tx: Tx,
   actor: Actor,
-  given: { secondFactor: boolean; label: string; response: Response },
+  given: { proved: boolean; secondFactor: boolean; response: Response },
 ): Promise<void> {
-  await services.db.run(tx, 'UPDATE sessions SET ended_at = $now WHERE id_hash = $hash', {
-    now: services.clock.now(),
-    hash: actor.sessionHash,
-  });
-  const { sessionId } = await openSession(services, tx, {
-    personId: actor.personId,
-    label: given.label,
-    secondFactor: given.secondFactor,
-  });
+  const sessionId = newToken();
+  const renewed = await services.db.run(
+    tx,
+    `UPDATE sessions SET id_hash = $new, last_seen_at = $now,
+       proved_at = CASE WHEN $proved THEN $now::timestamptz ELSE proved_at END,
+       second_factor_at = CASE WHEN $second THEN $now::timestamptz ELSE second_factor_at END
+     WHERE id_hash = $old AND ended_at IS NULL RETURNING 1`,
+    {
+      new: sha256(sessionId),
+      old: actor.sessionHash,
+      now: services.clock.now(),
+      proved: given.proved,
+      second: given.secondFactor,
+    },
+  );
+  if (renewed.length === 0) throw new AppError('not_signed_in', 'Please sign in again.');
   setSessionCookie(services.config, given.response, sessionId);
 }
 
@@ -76,19 +88,25 @@ export async function preparePasswordChange(
   given: { current: string; password: string },
 ): Promise<string> {
   await ownPassword(services, actor, given.current, 'current');
-  await refuseEasyPassword(given.password, [actor.name, actor.email]);
+  await refuseEasyPassword(given.password, await namesAround(services, actor.personId));
   return hashPassword(services.config, given.password);
 }
 
-/** Stores the new password, ends every other session, and mails a notice. */
-export async function changePassword(services: Services, tx: Tx, actor: Actor, hash: string): Promise<void> {
+/** Stores the new password, ends every other session, gives this one a new id, and mails a notice. */
+export async function changePassword(
+  services: Services,
+  tx: Tx,
+  actor: Actor,
+  given: { hash: string; response: Response },
+): Promise<void> {
   const now = services.clock.now();
   await services.db.run(tx, 'UPDATE people SET password_hash = $hash, updated_at = $now WHERE id = $id', {
-    hash,
+    hash: given.hash,
     now,
     id: actor.personId,
   });
   await endSessions(services, tx, actor.personId, actor.sessionHash);
+  await renewSession(services, tx, actor, { proved: false, secondFactor: false, response: given.response });
   await queueMail(services, tx, {
     kind: 'password_changed',
     to: actor.email,

@@ -1,4 +1,5 @@
 import { randomUUID } from 'node:crypto';
+import type { Request } from 'express';
 import type { AcceptInvitation, InvitationView } from '../../shared/api/auth.ts';
 import { type DealerRole, ROLE_NAMES, type VesselRole } from '../../shared/rules/permissions.ts';
 import { setScope, type Tx } from '../db/connection.ts';
@@ -6,8 +7,12 @@ import { AppError, invalid } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
 import { newToken, sha256 } from '../http/session.ts';
 import { queueMail } from '../mail/queueMail.ts';
+import { lockLog } from '../rotations/lockRotation.ts';
 import type { Services } from '../services.ts';
-import { hashPassword, refuseEasyPassword } from './passwords.ts';
+import { refuseEasyPassword } from './easyPasswords.ts';
+import { endExpired } from './members.ts';
+import { hashPassword } from './passwords.ts';
+import { checkPassword } from './signIn.ts';
 
 const VALID_MS = 72 * 3_600_000;
 
@@ -130,10 +135,27 @@ export async function readInvitation(services: Services, tx: Tx, token: string):
   };
 }
 
-/** Slow part: for somebody new, refuses an easy password and hashes the chosen one. */
-export async function prepareAcceptance(services: Services, given: AcceptInvitation): Promise<string | null> {
+/**
+ * Slow part. Somebody new: refuses an easy password and hashes the chosen one. Somebody known: checks their own
+ * password, counted as at sign-in, because a forwarded mail alone must not act in their name.
+ */
+export async function prepareAcceptance(
+  services: Services,
+  request: Request,
+  given: AcceptInvitation,
+): Promise<string | null> {
   const row = await services.db.transaction({ kind: 'none' }, (tx) => open(services, tx, given.token, false));
-  if (row.person_id !== null) return null;
+  if (row.person_id !== null) {
+    if (!given.password) throw invalid({ password: ['Give the password of your account here'] });
+    try {
+      await checkPassword(services, request, { email: row.email, password: given.password });
+    } catch (error) {
+      if (error instanceof AppError && error.code === 'wrong_sign_in')
+        throw invalid({ password: ['That is not the password of this account'] });
+      throw error;
+    }
+    return null;
+  }
   const errors: Record<string, string[]> = {};
   if (!given.name) errors.name = ['Give your name, as it will stand in the log'];
   if (!given.password) errors.password = ['Choose a password'];
@@ -150,6 +172,8 @@ export async function acceptInvitation(
   hash: string | null,
 ): Promise<void> {
   const { db, clock } = services;
+  const { vessel_id } = await open(services, tx, given.token, false);
+  await lockLog(services, tx, vessel_id);
   const row = await open(services, tx, given.token, true);
   const now = clock.now();
   let personId = row.person_id;
@@ -168,6 +192,7 @@ export async function acceptInvitation(
       (await db.row<{ name: string }>(tx, 'SELECT name FROM people WHERE id = $id', { id: personId }))
         ?.name ?? name;
   }
+  await endExpired(services, tx, { personId, vesselId: row.vessel_id });
   for (const role of row.roles) {
     await db.run(
       tx,

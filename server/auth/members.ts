@@ -1,9 +1,11 @@
 import { randomUUID } from 'node:crypto';
 import type { MemberView, OpenInvitationView } from '../../shared/api/auth.ts';
-import type { VesselRole } from '../../shared/rules/permissions.ts';
+import { ROLE_NAMES, type VesselRole } from '../../shared/rules/permissions.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, notFound } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
+import { queueMail } from '../mail/queueMail.ts';
+import { lockLog } from '../rotations/lockRotation.ts';
 import type { Services } from '../services.ts';
 
 /** Who has which role on the vessel now, by name. */
@@ -90,6 +92,19 @@ export async function withdrawInvitation(
   ]);
 }
 
+/** Marks roles whose time has run out as ended, so that they can be given again. */
+export async function endExpired(
+  services: Services,
+  tx: Tx,
+  given: { personId: string; vesselId: string },
+): Promise<void> {
+  await services.db.run(
+    tx,
+    'UPDATE memberships SET ended_at = ends_at WHERE person_id = $person AND vessel_id = $vessel AND ended_at IS NULL AND ends_at <= $now',
+    { person: given.personId, vessel: given.vesselId, now: services.clock.now() },
+  );
+}
+
 export interface RoleChange {
   readonly vesselId: string;
   readonly personId: string;
@@ -103,21 +118,29 @@ export async function setRoles(services: Services, tx: Tx, given: RoleChange): P
   const { db, clock } = services;
   const now = clock.now();
   const bind = { vessel: given.vesselId, person: given.personId, now };
+  const wanted = [...new Set(given.roles)];
+  await lockLog(services, tx, given.vesselId);
   await db.run(tx, 'SELECT 1 FROM memberships WHERE vessel_id = $vessel AND ended_at IS NULL FOR UPDATE', {
     vessel: given.vesselId,
   });
-  const held = await db.rows<{ role: VesselRole }>(
+  await endExpired(services, tx, given);
+  const held = await db.rows<{ role: VesselRole; suspended: boolean }>(
     tx,
-    'SELECT role FROM memberships WHERE vessel_id = $vessel AND person_id = $person AND ended_at IS NULL AND (ends_at IS NULL OR ends_at > $now)',
-    bind,
+    'SELECT role, suspended_at IS NOT NULL AS suspended FROM memberships WHERE vessel_id = $vessel AND person_id = $person AND ended_at IS NULL',
+    { vessel: given.vesselId, person: given.personId },
   );
   if (held.length === 0) throw notFound();
-  const person = await db.row<{ name: string }>(tx, 'SELECT name FROM people WHERE id = $person', {
-    person: given.personId,
-  });
+  const person = await db.row<{ name: string; email: string }>(
+    tx,
+    'SELECT name, email FROM people WHERE id = $person',
+    {
+      person: given.personId,
+    },
+  );
   const before = held.map(({ role }) => role);
-  const ended = before.filter((role) => !given.roles.includes(role));
-  const added = given.roles.filter((role) => !before.includes(role));
+  const ended = before.filter((role) => !wanted.includes(role));
+  const added = wanted.filter((role) => !before.includes(role));
+  const wasSuspended = held.every((one) => one.suspended);
   await db.run(
     tx,
     'UPDATE memberships SET ended_at = $now WHERE vessel_id = $vessel AND person_id = $person AND ended_at IS NULL AND role = ANY($ended::text[])',
@@ -135,8 +158,8 @@ export async function setRoles(services: Services, tx: Tx, given: RoleChange): P
     'UPDATE memberships SET suspended_at = CASE WHEN $suspended THEN coalesce(suspended_at, $now) END WHERE vessel_id = $vessel AND person_id = $person AND ended_at IS NULL',
     { ...bind, suspended: given.suspended },
   );
-  await keepACaptain(services, tx, given.vesselId);
-  if (given.roles.length === 0 || given.suspended)
+  if (before.includes('captain')) await keepACaptain(services, tx, given.vesselId);
+  if (!wanted.includes('captain') || given.suspended)
     await voidInvitationsBy(services, tx, given.personId, given.vesselId);
   const about = {
     vesselId: given.vesselId,
@@ -144,6 +167,7 @@ export async function setRoles(services: Services, tx: Tx, given: RoleChange): P
     actor: given.by,
     subject: { kind: 'person', id: given.personId, name: person?.name },
   } as const;
+  const suspension = given.suspended !== wasSuspended && wanted.length > 0;
   await appendLog(services, tx, [
     ...(added.length > 0
       ? [{ ...about, kind: 'role.given' as const, body: { roles: added.join(',') } }]
@@ -151,10 +175,33 @@ export async function setRoles(services: Services, tx: Tx, given: RoleChange): P
     ...(ended.length > 0
       ? [{ ...about, kind: 'role.ended' as const, body: { roles: ended.join(',') } }]
       : []),
-    ...(given.suspended
-      ? [{ ...about, kind: 'role.ended' as const, body: { roles: given.roles.join(','), suspended: true } }]
+    ...(suspension
+      ? [
+          {
+            ...about,
+            kind: given.suspended ? ('role.ended' as const) : ('role.given' as const),
+            body: { roles: wanted.join(','), suspended: given.suspended },
+          },
+        ]
       : []),
   ]);
+  if (person && added.length > 0 && !given.suspended) {
+    const vessel = await db.row<{ name: string }>(tx, 'SELECT name FROM vessels WHERE id = $vessel', {
+      vessel: given.vesselId,
+    });
+    await queueMail(services, tx, {
+      kind: 'role_given',
+      to: person.email,
+      vesselId: given.vesselId,
+      messageKey: `role_given:${given.vesselId}:${given.personId}:${now.toISOString()}`,
+      data: {
+        name: person.name,
+        place: vessel?.name ?? 'your vessel',
+        roles: added.map((role) => ROLE_NAMES[role]),
+        by: given.by.name,
+      },
+    });
+  }
 }
 
 async function keepACaptain(services: Services, tx: Tx, vesselId: string): Promise<void> {
@@ -180,19 +227,41 @@ async function voidInvitationsBy(
   );
 }
 
-/** Ends every role of somebody who signs off, at once, and voids what they had invited. Captains are kept to one. */
+/**
+ * Ends every role of somebody who signs off, at once, and voids what they had invited, with its line in the log.
+ * Throws `not_now` for the vessel's last captain. Does nothing for somebody without a role.
+ */
 export async function endRoles(
   services: Services,
   tx: Tx,
-  personId: string,
-  vesselId: string,
+  given: {
+    readonly personId: string;
+    readonly vesselId: string;
+    readonly by: { readonly id: string; readonly name: string };
+  },
 ): Promise<void> {
   const now = services.clock.now();
-  await services.db.run(
+  await lockLog(services, tx, given.vesselId);
+  await endExpired(services, tx, given);
+  const ended = await services.db.run<{ role: VesselRole }>(
     tx,
-    'UPDATE memberships SET ended_at = $now WHERE person_id = $person AND vessel_id = $vessel AND ended_at IS NULL',
-    { now, person: personId, vessel: vesselId },
+    'UPDATE memberships SET ended_at = $now WHERE person_id = $person AND vessel_id = $vessel AND ended_at IS NULL RETURNING role',
+    { now, person: given.personId, vessel: given.vesselId },
   );
-  await keepACaptain(services, tx, vesselId);
-  await voidInvitationsBy(services, tx, personId, vesselId);
+  if (ended.length === 0) return;
+  if (ended.some(({ role }) => role === 'captain')) await keepACaptain(services, tx, given.vesselId);
+  await voidInvitationsBy(services, tx, given.personId, given.vesselId);
+  const person = await services.db.row<{ name: string }>(tx, 'SELECT name FROM people WHERE id = $id', {
+    id: given.personId,
+  });
+  await appendLog(services, tx, [
+    {
+      vesselId: given.vesselId,
+      kind: 'role.ended',
+      at: now,
+      actor: given.by,
+      subject: { kind: 'person', id: given.personId, name: person?.name },
+      body: { roles: ended.map(({ role }) => role).join(',') },
+    },
+  ]);
 }

@@ -1,7 +1,6 @@
 import argon2 from 'argon2';
 import type { Config } from '../config.ts';
-import { AppError, invalid } from '../errors.ts';
-import { contextWords } from '../passphrases/score.ts';
+import { AppError } from '../errors.ts';
 
 /**
  * OWASP's minimum for argon2id (Password Storage Cheat Sheet): m = 19456 KiB, t = 2, p = 1. RFC 9106 section 4
@@ -22,8 +21,11 @@ const WAITING_MAX = 60;
 let working = 0;
 const waiting: (() => void)[] = [];
 
+/** Throws `unavailable` when too many wait already, so that neither memory nor patience runs out. */
 async function inTurn<T>(work: () => Promise<T>): Promise<T> {
-  if (working >= AT_ONCE) {
+  if (working < AT_ONCE) {
+    working += 1;
+  } else {
     if (waiting.length >= WAITING_MAX) {
       throw new AppError(
         'unavailable',
@@ -31,14 +33,15 @@ async function inTurn<T>(work: () => Promise<T>): Promise<T> {
         { retryAfter: 2 },
       );
     }
+    // Whoever ends hands its place on, so nobody who comes meanwhile can take it too.
     await new Promise<void>((resolve) => waiting.push(resolve));
   }
-  working += 1;
   try {
     return await work();
   } finally {
-    working -= 1;
-    waiting.shift()?.();
+    const next = waiting.shift();
+    if (next) next();
+    else working -= 1;
   }
 }
 
@@ -49,8 +52,19 @@ export function hashPassword(config: Config, password: string): Promise<string> 
 
 let nobodys: Promise<string> | null = null;
 
+/** A hash that belongs to nobody, made once; a failure is not kept. */
+function nobodysHash(config: Config): Promise<string> {
+  nobodys ??= argon2
+    .hash('nobody has this password', { ...PARAMETERS, secret: config.passwordPepper })
+    .catch((error: unknown) => {
+      nobodys = null;
+      throw error;
+    });
+  return nobodys;
+}
+
 /**
- * Whether the password is right. Without a stored hash a made-up one is checked, so that an unknown address costs
+ * Whether the password is right. Without a stored hash nobody's is checked, so that an unknown address costs
  * the same time as a known one.
  */
 export async function passwordMatches(
@@ -58,45 +72,15 @@ export async function passwordMatches(
   stored: string | null,
   password: string,
 ): Promise<boolean> {
-  nobodys ??= hashPassword(config, 'nobody has this password');
-  const hash = stored ?? (await nobodys);
-  const matches = await inTurn(() => argon2.verify(hash, password, { secret: config.passwordPepper }));
+  // Made in either case, so that the first unknown address after a start does not stand out.
+  const nobody = await nobodysHash(config);
+  const matches = await inTurn(() =>
+    argon2.verify(stored ?? nobody, password, { secret: config.passwordPepper }),
+  );
   return stored !== null && matches;
 }
 
 /** Whether a stored hash was made with weaker parameters than today's. */
 export function needsNewHash(stored: string): boolean {
   return argon2.needsRehash(stored, PARAMETERS);
-}
-
-const LIST = 'passwords-common';
-const COMMONEST = 3_000;
-let common: Promise<ReadonlySet<string>> | null = null;
-
-/** The commonest passwords of the strength package's own list, most common first. */
-function commonPasswords(): Promise<ReadonlySet<string>> {
-  common ??= (async () => {
-    const { dictionary } = await import('@zxcvbn-ts/language-common');
-    const { [LIST]: list = [] } = dictionary as Record<string, Iterable<string>>;
-    return new Set(Array.from(list).slice(0, COMMONEST));
-  })();
-  return common;
-}
-
-/** Refuses a password that is among the commonest or is one of the person's or vessel's own words. */
-export async function refuseEasyPassword(password: string, context: readonly string[]): Promise<void> {
-  const plain = password.toLowerCase().replace(/[^\p{L}\p{N}]/gu, '');
-  const easy = (await commonPasswords()).has(password.toLowerCase());
-  if (easy)
-    throw invalid({
-      password: [
-        'This is one of the first passwords anybody tries. Choose another; a few unrelated words are good.',
-      ],
-    });
-  const own = contextWords(context).map((word) => word.toLowerCase().replace(/[^\p{L}\p{N}]/gu, ''));
-  if (own.some((word) => word.length >= 4 && (plain === word || plain.replace(/\d+$/, '') === word))) {
-    throw invalid({
-      password: ['This is a name that belongs to you or the vessel. Choose something unrelated.'],
-    });
-  }
 }

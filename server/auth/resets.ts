@@ -1,27 +1,57 @@
 import { randomUUID } from 'node:crypto';
+import { setTimeout as after } from 'node:timers/promises';
+import type { Request } from 'express';
 import type { Tx } from '../db/connection.ts';
 import { AppError } from '../errors.ts';
 import { newToken, sha256 } from '../http/session.ts';
 import { queueMail } from '../mail/queueMail.ts';
 import type { Services } from '../services.ts';
-import { hashPassword, refuseEasyPassword } from './passwords.ts';
+import { namesAround, refuseEasyPassword } from './easyPasswords.ts';
+import { hashPassword } from './passwords.ts';
 import { endSessions } from './sessions.ts';
+import { countFailure, letterLimit, refuseWhileClosed } from './throttle.ts';
 
 const VALID_MS = 15 * 60_000;
 
-/** Queues a link when the address is known; the caller answers the same either way. */
-export async function askForReset(services: Services, tx: Tx, email: string): Promise<void> {
+/** Every answer takes at least this long, so that time does not tell whether an address is known (milliseconds). */
+const ANSWER_MS = 250;
+/** Links one person may be sent within an hour; more asking sends nothing more. */
+const LINKS_AN_HOUR = 5;
+
+/**
+ * Mails a link when the address is known. Known, unknown, disabled and asked for too often answer the same, after
+ * the same time. Throws `too_many` when one network address asks for very many.
+ */
+export async function askForReset(services: Services, request: Request, email: string): Promise<void> {
+  const limit = letterLimit(request.ip ?? 'unknown');
+  await refuseWhileClosed(services, [limit]);
+  await Promise.all([
+    after(ANSWER_MS),
+    countFailure(services, [limit]),
+    services.db.transaction({ kind: 'none' }, (tx) => mailLink(services, tx, email)),
+  ]);
+}
+
+async function mailLink(services: Services, tx: Tx, email: string): Promise<void> {
   const { db, clock } = services;
   const now = clock.now();
   const person = await db.row<{ id: string; name: string; email: string }>(
     tx,
-    'SELECT id, name, email FROM people WHERE email = $email AND disabled_at IS NULL',
+    'SELECT id, name, email FROM people WHERE email = $email AND disabled_at IS NULL FOR UPDATE',
     { email: email.trim() },
   );
-  // The same work for an unknown address, so that time tells nothing.
+  if (!person) return;
+  const asked = await db.rows(
+    tx,
+    'SELECT 1 FROM password_resets WHERE person_id = $person AND created_at > $since',
+    { person: person.id, since: new Date(now.getTime() - 3_600_000) },
+  );
+  if (asked.length >= LINKS_AN_HOUR) {
+    services.log.warn({ event: 'throttled', limit: 'letters', person: person.id }, 'too many reset links');
+    return;
+  }
   const token = newToken();
   const id = randomUUID();
-  if (!person) return;
   await db.run(
     tx,
     'UPDATE password_resets SET used_at = $now WHERE person_id = $person AND used_at IS NULL',
@@ -68,7 +98,7 @@ export async function prepareReset(
 ): Promise<string> {
   const row = await services.db.transaction({ kind: 'none' }, (tx) => find(services, tx, given.token, false));
   if (!row) throw used();
-  await refuseEasyPassword(given.password, [row.name, row.email]);
+  await refuseEasyPassword(given.password, await namesAround(services, row.person_id));
   return hashPassword(services.config, given.password);
 }
 

@@ -17,7 +17,7 @@ import { listInvitations, listMembers, setRoles, withdrawInvitation } from './me
 import { presentSession } from './presentSession.ts';
 import { askForReset, prepareReset, useReset } from './resets.ts';
 import { beginEnrolment, finishEnrolment, removeSecondFactor } from './secondFactor.ts';
-import { deviceLabel, endSessions } from './sessions.ts';
+import { endSessions } from './sessions.ts';
 import { admitPerson, signIn } from './signIn.ts';
 
 const who = (actor: { personId: string; name: string }) => ({ id: actor.personId, name: actor.name });
@@ -41,12 +41,8 @@ const sessionRoutes = [
   }),
   endpoint(api.proveIdentity, {
     prepare: ({ services, actor, body }) => proveAgain(services, actor, body),
-    handle: async ({ services, tx, actor, request, response, prepared }) => {
-      await renewSession(services, tx, actor, {
-        secondFactor: prepared,
-        label: deviceLabel(request.headers['user-agent']),
-        response,
-      });
+    handle: async ({ services, tx, actor, response, prepared }) => {
+      await renewSession(services, tx, actor, { proved: true, secondFactor: prepared, response });
       return undefined;
     },
   }),
@@ -54,10 +50,8 @@ const sessionRoutes = [
 
 const strangerRoutes = [
   openEndpoint(api.askForReset, {
-    handle: async ({ services, tx, body }) => {
-      await askForReset(services, tx, body.email);
-      return undefined;
-    },
+    prepare: ({ services, request, body }) => askForReset(services, request, body.email),
+    handle: async () => undefined,
   }),
   openEndpoint(api.resetPassword, {
     prepare: ({ services, body }) => prepareReset(services, body),
@@ -70,7 +64,7 @@ const strangerRoutes = [
     handle: ({ services, tx, body }) => readInvitation(services, tx, body.token),
   }),
   openEndpoint(api.acceptInvitation, {
-    prepare: ({ services, body }) => prepareAcceptance(services, body),
+    prepare: ({ services, request, body }) => prepareAcceptance(services, request, body),
     handle: async ({ services, tx, body, prepared }) => {
       await acceptInvitation(services, tx, body, prepared);
       return undefined;
@@ -91,8 +85,8 @@ const accountRoutes = [
   }),
   endpoint(api.changePassword, {
     prepare: ({ services, actor, body }) => preparePasswordChange(services, actor, body),
-    handle: async ({ services, tx, actor, prepared }) => {
-      await changePassword(services, tx, actor, prepared);
+    handle: async ({ services, tx, actor, response, prepared }) => {
+      await changePassword(services, tx, actor, { hash: prepared, response });
       return undefined;
     },
   }),

@@ -2,7 +2,14 @@ import { randomUUID } from 'node:crypto';
 import type { Request, Response } from 'express';
 import type { Tx } from '../db/connection.ts';
 import { AppError } from '../errors.ts';
-import { newToken, readDeviceCookie, setDeviceCookie, setSessionCookie, sha256 } from '../http/session.ts';
+import {
+  newToken,
+  readDeviceCookie,
+  readSessionCookie,
+  setDeviceCookie,
+  setSessionCookie,
+  sha256,
+} from '../http/session.ts';
 import { queueMail } from '../mail/queueMail.ts';
 import type { Services } from '../services.ts';
 import { hashPassword, needsNewHash, passwordMatches } from './passwords.ts';
@@ -13,6 +20,7 @@ import {
   addressLimit,
   codeLimit,
   countFailure,
+  deviceLimit,
   everybodyLimit,
   forgetFailures,
   refuseWhileClosed,
@@ -43,8 +51,8 @@ const wrong = () =>
 
 /**
  * Checks mail and password. Unknown, disabled and wrong cost the same and answer the same. Failures are counted by
- * account, by address and all together; a browser that signed this person in before is let past the account's
- * count, so that nobody can lock the real person out by guessing.
+ * account, by address and all together; a browser that signed this person in before is counted by itself, so that
+ * nobody can lock the real person out by guessing.
  */
 export async function checkPassword(
   services: Services,
@@ -71,8 +79,10 @@ export async function checkPassword(
     return { person: found, knownDevice: device?.id ?? null };
   });
   const address = request.ip ?? 'unknown';
-  const limits = [addressLimit(address), everybodyLimit, accountLimit(email)];
-  await refuseWhileClosed(services, knownDevice ? [] : limits);
+  const limits = knownDevice
+    ? [deviceLimit(knownDevice)]
+    : [addressLimit(address), everybodyLimit, accountLimit(email)];
+  await refuseWhileClosed(services, limits);
   const usable = person && !person.disabled_at ? person.password_hash : null;
   const matches = await passwordMatches(config, usable, given.password);
   if (!matches || !person) {
@@ -122,7 +132,10 @@ export async function admitPerson(
 ): Promise<Admitted> {
   const checked = await checkPassword(services, request, given);
   const secondFactor = await checkSecondFactor(services, checked.person, given.code);
-  await forgetFailures(services, accountLimit(checked.person.email));
+  await forgetFailures(
+    services,
+    checked.knownDevice ? deviceLimit(checked.knownDevice) : accountLimit(checked.person.email),
+  );
   const stored = checked.person.password_hash;
   const newHash = stored && needsNewHash(stored) ? await hashPassword(services.config, given.password) : null;
   return { checked, secondFactor, newHash };
@@ -137,6 +150,14 @@ export async function signIn(
   const { db, config } = services;
   const now = services.clock.now();
   const { person, knownDevice } = admitted.checked;
+  // What the browser was signed in to before ends, so that an id seen or planted earlier is worth nothing.
+  const earlier = readSessionCookie(config, request);
+  if (earlier) {
+    await db.run(tx, 'UPDATE sessions SET ended_at = $now WHERE id_hash = $hash AND ended_at IS NULL', {
+      now,
+      hash: sha256(earlier),
+    });
+  }
   const label = deviceLabel(request.headers['user-agent']);
   const { sessionId, endedOldest } = await openSession(services, tx, {
     personId: person.id,

@@ -1,3 +1,4 @@
+import { isIPv6 } from 'node:net';
 import { AppError } from '../errors.ts';
 import type { Services } from '../services.ts';
 
@@ -11,6 +12,21 @@ const WINDOW_MS = 15 * 60_000;
 const FIRST_WAIT_MS = 2_000;
 const LONGEST_WAIT_MS = 15 * 60_000;
 
+/** One subscriber's address: an IPv6 network of 64 bits is theirs alone (RFC 6177), so it counts as one. */
+function network(address: string): string {
+  const mapped = /^::ffff:(\d+\.\d+\.\d+\.\d+)$/i.exec(address);
+  if (mapped?.[1]) return mapped[1];
+  if (!isIPv6(address)) return address;
+  const [head = '', tail] = address.split('%')[0]?.split('::') ?? [];
+  const left = head === '' ? [] : head.split(':');
+  const right = tail === undefined || tail === '' ? [] : tail.split(':');
+  const zeros = Array.from({ length: Math.max(0, 8 - left.length - right.length) }, () => '0');
+  return [...left, ...(tail === undefined ? [] : zeros), ...right]
+    .slice(0, 4)
+    .map((part) => Number.parseInt(part, 16).toString(16))
+    .join(':');
+}
+
 /** Milliseconds to wait after this many failures: none while they are free, then doubling up to a quarter of an hour. */
 export function waitAfter(failures: number, free: number): number {
   if (failures < free) return 0;
@@ -19,7 +35,13 @@ export function waitAfter(failures: number, free: number): number {
 
 /** Failures of one account, of one address, and of all together. */
 export const accountLimit = (email: string): Limit => ({ key: `account:${email.toLowerCase()}`, free: 8 });
-export const addressLimit = (address: string): Limit => ({ key: `address:${address}`, free: 20 });
+export const addressLimit = (address: string): Limit => ({ key: `address:${network(address)}`, free: 20 });
+/** Failures from a browser that signed this person in before; they count nowhere else. */
+export const deviceLimit = (deviceId: string): Limit => ({ key: `device:${deviceId}`, free: 8 });
+/** Failures of somebody signed in to prove who they are; guesses at sign-in do not count here. */
+export const proofLimit = (personId: string): Limit => ({ key: `proof:${personId}`, free: 8 });
+/** Letters asked for from one address: resets answer the same for every address of mail, so all count. */
+export const letterLimit = (address: string): Limit => ({ key: `letters:${network(address)}`, free: 15 });
 export const everybodyLimit: Limit = { key: 'everybody', free: 400 };
 export const codeLimit = (personId: string): Limit => ({ key: `code:${personId}`, free: 5 });
 

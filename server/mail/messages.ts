@@ -10,6 +10,12 @@ export interface MailData {
     readonly by: string;
     readonly expiresAt: string;
   };
+  role_given: {
+    readonly name: string;
+    readonly place: string;
+    readonly roles: readonly string[];
+    readonly by: string;
+  };
   password_reset: { readonly name: string };
   password_changed: { readonly name: string; readonly at: string };
   new_device: { readonly name: string; readonly device: string; readonly at: string };
@@ -56,6 +62,13 @@ const writers: Writers = {
         `The link below works once, until ${utc(data.expiresAt)}. If you do not know what this is about, leave it alone and nothing happens.`,
       ],
       link: { words: 'Accept the invitation', url: `${publicUrl}/invitation#${secret ?? ''}` },
+    }),
+  role_given: (data, { publicUrl }) =>
+    letter({
+      subject: `Your role on ${data.place} in Quayword`,
+      greeting: `Dear ${data.name},`,
+      paragraphs: [`${data.by} gave you another role on ${data.place}: ${data.roles.join(', ')}.`],
+      link: { words: 'Open Quayword', url: publicUrl },
     }),
   password_reset: (data, { publicUrl, secret }) =>
     letter({
