@@ -1,6 +1,9 @@
 import { authRoutes } from './auth/routes.ts';
+import { crewRoutes } from './crew/routes.ts';
 import { fleetRoutes } from './fleet/routes.ts';
 import type { Endpoint } from './http/endpoint.ts';
+import { networkRoutes } from './networks/routes.ts';
+import { passphraseRoutes } from './passphrases/routes.ts';
 import { rotationRoutes } from './rotations/routes.ts';
 import { vesselRoutes } from './vessels/routes.ts';
 
@@ -10,4 +13,7 @@ export const endpoints: readonly Endpoint[] = [
   ...fleetRoutes,
   ...rotationRoutes,
   ...vesselRoutes,
+  ...networkRoutes,
+  ...passphraseRoutes,
+  ...crewRoutes,
 ];

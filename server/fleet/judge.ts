@@ -1,6 +1,7 @@
 import type { FleetFigures } from '../../shared/api/fleet.ts';
 import type { NextChangeKind, Standing } from '../../shared/rules/fleet.ts';
 import type { Audience } from '../../shared/rules/permissions.ts';
+import { ageInDays, standingOf as standingRule } from '../../shared/rules/standing.ts';
 import { roughGuess } from '../../shared/rules/strength.ts';
 import type { NetworkFacts, VesselFacts } from './fleetFacts.ts';
 import { heldWords } from './heldWords.ts';
@@ -12,7 +13,7 @@ const SILENT_MS = DAY_MS;
 /** Age of the live passphrase in days of 24 hours; null where none is on record. */
 export function ageDays(network: NetworkFacts, now: Date): number | null {
   if (network.liveAt === null) return null;
-  return Math.max(0, (now.getTime() - network.liveAt.getTime()) / DAY_MS);
+  return ageInDays(network.liveAt, now);
 }
 
 /** Age divided by limit: above 1 is past it. */
@@ -135,14 +136,6 @@ export function worstStanding(standings: readonly Standing[]): Standing {
   );
 }
 
-/** From this share of its limit on a network is due (common practice, no source). */
-const DUE_RATIO = 0.9;
-
-/** In order, due, overdue or exposed. A network without a passphrase on record is due: nothing vouches for it. */
-export function standingOf(network: NetworkFacts, now: Date): Standing {
-  if (network.departed > 0 || network.leaks > 0) return 'exposed';
-  const ratio = ageRatio(network, now);
-  if (ratio === null) return 'due';
-  if (ratio > 1) return 'overdue';
-  return ratio >= DUE_RATIO ? 'due' : 'in_order';
-}
+/** In order, due, overdue or exposed. */
+export const standingOf = (network: NetworkFacts, now: Date): Standing =>
+  standingRule({ ratio: ageRatio(network, now), departed: network.departed, leaks: network.leaks });

@@ -13,6 +13,7 @@ export const LOG_KINDS = {
   'passphrase.made': 'Passphrase made',
   'passphrase.retired': 'Passphrase retired',
   'leak.reported': 'Leak reported',
+  'leak.withdrawn': 'Leak report withdrawn',
   'rotation.planned': 'Change planned',
   'rotation.staged': 'New passphrase staged',
   'rotation.cancelled': 'Change cancelled',

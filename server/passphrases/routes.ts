@@ -1,0 +1,47 @@
+import * as api from '../../shared/api/passphrases.ts';
+import { endpoint } from '../http/endpoint.ts';
+import { readNetwork } from '../networks/readNetworks.ts';
+import { type Asked, reveal } from './reveal.ts';
+import { judge, typeIn } from './typeIn.ts';
+
+type Wide = Omit<Asked, 'vesselId' | 'networkId'> & {
+  readonly params: { readonly vesselId: string; readonly networkId: string };
+};
+const askedOf = ({ services, tx, actor, now, params }: Wide): Asked => ({
+  services,
+  tx,
+  actor,
+  now,
+  ...params,
+});
+
+export const passphraseRoutes = [
+  endpoint(api.checkTyped, {
+    prepare: ({ services, params, body }) =>
+      judge(services, params.vesselId, params.networkId, body.passphrase),
+    handle: async ({ prepared: { verdict } }) => ({
+      grade: verdict.grade,
+      words: verdict.words,
+      why: verdict.why,
+    }),
+  }),
+  endpoint(api.typeIn, {
+    prepare: ({ services, params, body }) =>
+      judge(services, params.vesselId, params.networkId, body.passphrase),
+    handle: async (context) => {
+      const { services, tx, actor, params, now, prepared } = context;
+      await typeIn(askedOf(context), context.body.passphrase, prepared);
+      const { grade, words, why } = prepared.verdict;
+      return {
+        network: await readNetwork(
+          services,
+          tx,
+          { vesselId: params.vesselId, roles: actor.roles, now },
+          params.networkId,
+        ),
+        verdict: { grade, words, why },
+      };
+    },
+  }),
+  endpoint(api.reveal, { handle: (context) => reveal(askedOf(context)) }),
+];

@@ -1,0 +1,96 @@
+import type { Security } from '../../shared/api/common.ts';
+import { type Verdict, verdict } from '../../shared/rules/strength.ts';
+import { AppError, notFound } from '../errors.ts';
+import { appendLog } from '../handovers/appendLog.ts';
+import { recordHandover } from '../handovers/recordHandover.ts';
+import { comeIntoForceByHand } from '../rotations/typedIn.ts';
+import type { Services } from '../services.ts';
+import { type Asked, holderOf } from './reveal.ts';
+import { contextWords, ScoreUnavailable, scoreTyped } from './score.ts';
+import { sealPassphrase } from './sealPassphrase.ts';
+
+export interface Judged {
+  readonly bits: number;
+  readonly verdict: Verdict;
+}
+
+interface Words {
+  ssid: string;
+  security: Security;
+  age_limit_days: number;
+  name: string;
+  owner_name: string | null;
+  home_port: string | null;
+  lying: string | null;
+  crew: string[];
+}
+
+/** Scores a typed passphrase with the vessel's own words as what a stranger tries first. Runs before the transaction. */
+export async function judge(
+  services: Services,
+  vesselId: string,
+  networkId: string,
+  passphrase: string,
+): Promise<Judged> {
+  const row = await services.db.transaction({ kind: 'vessel', vesselId }, (tx) =>
+    services.db.row<Words>(
+      tx,
+      `SELECT n.ssid, n.security, p.age_limit_days, v.name, v.owner_name, v.home_port, v.lying,
+         ARRAY(SELECT c.name FROM crew_members c WHERE c.vessel_id = v.id AND c.signed_off_at IS NULL ORDER BY c.name LIMIT 30) AS crew
+       FROM networks n JOIN vessels v ON v.id = n.vessel_id JOIN policies p ON p.network_id = n.id
+       WHERE n.id = $network AND n.vessel_id = $vessel AND n.removed_at IS NULL`,
+      { network: networkId, vessel: vesselId },
+    ),
+  );
+  if (!row) throw notFound();
+  const words = contextWords([
+    row.name,
+    row.ssid,
+    row.owner_name,
+    row.home_port,
+    row.lying,
+    'guest',
+    'crew',
+    'owner',
+    ...row.crew,
+  ]);
+  try {
+    const { guesses, bits } = await scoreTyped(passphrase, words);
+    return { bits, verdict: verdict({ security: row.security, ageLimitDays: row.age_limit_days, guesses }) };
+  } catch (error) {
+    if (error instanceof ScoreUnavailable)
+      throw new AppError('unavailable', error.message, { retryAfter: 5, cause: error });
+    throw error;
+  }
+}
+
+/**
+ * Writes down the passphrase that is in force already. A weak one is taken, because it is the truth, and flagged.
+ * Whoever typed it in holds it.
+ */
+export async function typeIn(asked: Asked, passphrase: string, judged: Judged): Promise<void> {
+  const { services, tx, actor, vesselId, networkId, now } = asked;
+  const passphraseId = await sealPassphrase(services, tx, {
+    vesselId,
+    networkId,
+    passphrase,
+    origin: 'typed',
+    bits: judged.bits,
+    now,
+  });
+  const by = { now, actor: { id: actor.personId, name: actor.name } };
+  await appendLog(services, tx, [
+    { vesselId, kind: 'passphrase.typed', at: now, networkId, passphraseId, actor: by.actor },
+  ]);
+  await comeIntoForceByHand(services, tx, { vesselId, networkId, passphraseId }, by);
+  const holder = await holderOf(services, tx, vesselId, actor.personId);
+  await recordHandover(services, tx, {
+    vesselId,
+    networkId,
+    passphraseId,
+    holder,
+    channel: 'typed',
+    byPerson: actor.personId,
+    at: now,
+  });
+}
