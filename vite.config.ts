@@ -6,6 +6,7 @@ import { defineConfig } from 'vitest/config';
 export default defineConfig({
   plugins: [react(), tailwindcss()],
   build: { outDir: 'dist/client', emptyOutDir: true, manifest: true, assetsInlineLimit: 0 },
+  server: { proxy: { '/api': `http://127.0.0.1:${process.env.API_PORT ?? 4189}` } },
   test: {
     include: ['tests/**/*.test.ts', 'tests/**/*.test.tsx'],
     globalSetup: ['tests/support/globalSetup.ts'],

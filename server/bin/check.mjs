@@ -1,6 +1,5 @@
-import { spawn } from 'node:child_process';
 import { pathToFileURL } from 'node:url';
-import { checkNode, main, packagesUp, ROOT, say } from './setUp.mjs';
+import { checkNode, main, orderlyEnd, packagesUp, say, startChild } from './setUp.mjs';
 
 const STEPS = [
   { name: 'types', args: ['node_modules/typescript/bin/tsc', '--noEmit', '-p', '.'] },
@@ -11,43 +10,46 @@ const STEPS = [
   { name: 'unused code and packages', args: ['node_modules/knip/bin/knip.js', '--no-progress'] },
 ];
 
-function step({ name, args }) {
-  return new Promise((resolve) => {
-    const child = spawn(process.execPath, args, { cwd: ROOT, stdio: ['ignore', 'pipe', 'pipe'] });
+/** In `npm test` the import arrows are one of the test files. */
+const ARROWS = {
+  name: 'import arrows',
+  args: ['node_modules/vitest/vitest.mjs', 'run', 'tests/arrows.test.ts'],
+};
+
+function step({ name, args }, children) {
+  return new Promise((resolve, reject) => {
+    const child = startChild(args, process.env, { stdio: ['ignore', 'pipe', 'pipe'], children });
     let output = '';
     child.stdout.on('data', (chunk) => (output += chunk));
     child.stderr.on('data', (chunk) => (output += chunk));
-    child.once('exit', (code) => resolve({ name, passed: code === 0, output }));
+    child.once('error', reject);
+    child.once('close', (code) => resolve({ name, passed: code === 0, output }));
   });
 }
 
-/** Runs every check and prints each outcome; answers how many passed and failed. Import arrows are a test of their own. */
-export async function check() {
-  let passed = 0;
-  let failed = 0;
-  for (const one of STEPS) {
-    const { name, passed: good, output } = await step(one);
-    say(`${good ? 'passed' : 'FAILED'}  ${name}`);
-    if (!good) say(output);
-    if (good) passed += 1;
-    else failed += 1;
+/** Runs the checks side by side and prints each outcome in order; answers how many passed and failed. */
+export async function check(children, steps = STEPS) {
+  const running = steps.map((one) => step(one, children));
+  const counts = { passed: 0, failed: 0 };
+  for (const outcome of running) {
+    const { name, passed, output } = await outcome;
+    say(`${passed ? 'passed' : 'FAILED'}  ${name}`);
+    if (!passed) say(output.trimEnd());
+    counts[passed ? 'passed' : 'failed'] += 1;
   }
-  return { passed, failed };
+  return counts;
 }
 
 if (import.meta.url === pathToFileURL(process.argv[1] ?? '').href) {
   await main(async () => {
     checkNode();
-    packagesUp();
-    const checks = await check();
-    const arrows = await step({
-      name: 'import arrows',
-      args: ['node_modules/vitest/vitest.mjs', 'run', 'tests/arrows.test.ts'],
-    });
-    say(`${arrows.passed ? 'passed' : 'FAILED'}  import arrows`);
-    if (!arrows.passed) say(arrows.output);
-    const failed = checks.failed + (arrows.passed ? 0 : 1);
-    say(`${checks.passed + (arrows.passed ? 1 : 0)} passed, ${failed} failed`);
+    packagesUp({ needs: 'vitest' });
+    const children = [];
+    const end = orderlyEnd({ children });
+    end.onSignals((number) => 128 + number);
+    const { passed, failed } = await check(children, [...STEPS, ARROWS]);
+    if (end.isStopping()) return;
+    say(`${passed} passed, ${failed} failed`);
     process.exit(failed === 0 ? 0 : 1);
   });
 }

@@ -5,4 +5,11 @@ export function databaseUp(options: {
   log: (sentence: string) => void;
   fast?: boolean;
   firstPort?: number;
-}): Promise<{ ownerUrl: string; appUrl: string; stop: () => Promise<void> }>;
+}): Promise<{
+  ownerUrl: string;
+  appUrl: string;
+  /** Ends the server if this call started it. */
+  stop: () => Promise<void>;
+  /** `stop`, and the data goes too. */
+  discard: () => Promise<void>;
+}>;

@@ -1,113 +1,115 @@
-import { createServer } from 'node:http';
+import { mkdir, readdir, readFile, rm, writeFile } from 'node:fs/promises';
+import { createServer, type IncomingMessage, type ServerResponse } from 'node:http';
+import path from 'node:path';
 import { simpleParser } from 'mailparser';
 import { SMTPServer } from 'smtp-server';
+import { mailListPage, mailPage, notFoundPage, type ShownMail } from './mailboxPages.ts';
 
 /**
- * The demo's mailbox: takes every mail of this machine over real SMTP and shows it on a page. Nothing is sent on,
- * and nothing is kept when it stops. Loopback only.
+ * The demo's mailbox: takes every mail of this machine over real SMTP, keeps the newest as `.eml` files that their
+ * owner alone can read, and shows them on a page. Nothing is sent on. Loopback only.
  */
 
-interface Mail {
-  readonly number: number;
-  readonly at: Date;
-  readonly from: string;
-  readonly to: string;
-  readonly subject: string;
-  readonly text: string;
-  readonly html: string;
+const KEPT = 200;
+const LARGEST_BYTES = 2_000_000;
+const folder = path.join(process.env.DATA_DIR ?? '.data', 'mail');
+const smtpPort = Number(process.env.SMTP_PORT ?? 4182);
+const webPort = Number(process.env.MAILBOX_PORT ?? 4181);
+const mails: ShownMail[] = [];
+
+/** A mail's file: its number, then the instant it came in milliseconds since 1970. */
+const fileOf = (number: number, at: Date) => `${String(number).padStart(6, '0')}-${at.getTime()}.eml`;
+
+async function show(raw: Buffer, number: number, at: Date): Promise<void> {
+  const parsed = await simpleParser(raw);
+  const to = [parsed.to ?? []].flat().map((one) => one.text);
+  mails.unshift({
+    number,
+    at,
+    from: parsed.from?.text ?? '',
+    to: to.join(', '),
+    subject: parsed.subject ?? '(no subject)',
+    text: parsed.text ?? '',
+    html: parsed.html || '',
+  });
 }
 
-const KEPT = 200;
-const mails: Mail[] = [];
-let count = 0;
+async function take(raw: Buffer): Promise<void> {
+  const number = (mails[0]?.number ?? 0) + 1;
+  const at = new Date();
+  await show(raw, number, at);
+  await writeFile(path.join(folder, fileOf(number, at)), raw, { mode: 0o600 });
+  for (const old of mails.splice(KEPT))
+    await rm(path.join(folder, fileOf(old.number, old.at)), { force: true });
+}
+
+async function readKept(): Promise<void> {
+  await mkdir(folder, { recursive: true, mode: 0o700 });
+  for (const name of (await readdir(folder)).sort()) {
+    const [, number, at] = /^(\d{6})-(\d+)\.eml$/.exec(name) ?? [];
+    if (number && at)
+      await show(await readFile(path.join(folder, name)), Number(number), new Date(Number(at)));
+  }
+}
+
+/** One mail after the other, so that their numbers follow the order in which they came. */
+let taking: Promise<void> = Promise.resolve();
 
 const smtp = new SMTPServer({
   authOptional: true,
   disabledCommands: ['STARTTLS'],
-  size: 2_000_000,
-  onData(stream, session, done) {
-    simpleParser(stream).then(
-      (parsed) => {
-        count += 1;
-        mails.unshift({
-          number: count,
-          at: new Date(),
-          from: parsed.from?.text ?? '',
-          to: session.envelope.rcptTo.map(({ address }) => address).join(', '),
-          subject: parsed.subject ?? '(no subject)',
-          text: parsed.text ?? '',
-          html: parsed.html || '',
-        });
-        mails.length = Math.min(mails.length, KEPT);
-        done();
-      },
-      (error: Error) => done(error),
-    );
+  size: LARGEST_BYTES,
+  onData(stream, _session, done) {
+    const parts: Buffer[] = [];
+    stream.on('data', (part: Buffer) => parts.push(part));
+    stream.once('end', () => {
+      if (stream.sizeExceeded) {
+        done(Object.assign(new Error('The mail is too large'), { responseCode: 552 }));
+        return;
+      }
+      taking = taking
+        .then(() => take(Buffer.concat(parts)))
+        .then(
+          () => done(),
+          (error: Error) => done(error),
+        );
+    });
   },
 });
 
-const plain = (text: string) => text.replace(/[&<>"']/g, (sign) => `&#${sign.charCodeAt(0)};`);
+/** Another site's page must not read these mails by pointing its own name at this machine. */
+const isLocal = (host = '') => /^(localhost|127\.0\.0\.1|\[::1\])(:\d+)?$/.test(host);
 
-const page = (
-  title: string,
-  body: string,
-) => `<!doctype html><html lang="en"><meta charset="utf-8"><title>${plain(title)}</title>
-<meta name="viewport" content="width=device-width, initial-scale=1"><style>
-:root{color-scheme:light dark}body{font:15px/1.5 system-ui,sans-serif;margin:0 auto;max-width:52rem;padding:1.5rem}
-a{color:inherit}li{border-bottom:1px solid #8886;padding:.6rem 0}ol{list-style:none;padding:0}small{opacity:.75}
-pre{white-space:pre-wrap;font:inherit}iframe{width:100%;height:36rem;border:1px solid #8886;background:#fff}</style>${body}`;
-
-function list(): string {
-  const rows = mails.map(
-    (mail) =>
-      `<li><a href="/${mail.number}">${plain(mail.subject)}</a><br><small>to ${plain(mail.to)}, ${mail.at.toISOString().slice(11, 16)} UTC</small></li>`,
-  );
-  return page(
-    'Mailbox',
-    `<h1>Mailbox</h1><p>Every mail this machine's Quayword sends, newest first.</p><ol>${rows.join('') || '<li>No mail yet.</li>'}</ol>`,
-  );
-}
-
-function one(mail: Mail): string {
-  const frame = mail.html
-    ? `<iframe sandbox="allow-popups" title="The mail as its reader sees it" srcdoc="${plain(mail.html)}"></iframe>`
-    : '';
-  return page(
-    mail.subject,
-    `<p><a href="/">Mailbox</a></p><h1>${plain(mail.subject)}</h1><p>From ${plain(mail.from)} to ${plain(mail.to)}</p>${frame}<h2>As plain text</h2><pre>${linked(mail.text)}</pre>`,
-  );
-}
-
-const linked = (text: string) =>
-  plain(text).replace(
-    /https?:&#47;&#47;\S+|https?:\/\/[^\s<]+/g,
-    (url) => `<a href="${url}" rel="noreferrer">${url}</a>`,
-  );
-
-const web = createServer((request, response) => {
-  const number = Number((request.url ?? '/').slice(1));
-  const mail = mails.find((known) => known.number === number);
-  const found = request.url === '/' || mail !== undefined;
-  response.writeHead(found ? 200 : 404, {
+function answer(request: IncomingMessage, response: ServerResponse): void {
+  const mail = mails.find((known) => request.url === `/${known.number}`);
+  const local = isLocal(request.headers.host);
+  const body = !local ? null : request.url === '/' ? mailListPage(mails) : mail ? mailPage(mail) : null;
+  response.writeHead(body === null ? (local ? 404 : 421) : 200, {
     'Content-Type': 'text/html; charset=utf-8',
     'Cache-Control': 'no-store',
+    'Referrer-Policy': 'no-referrer',
+    'X-Content-Type-Options': 'nosniff',
+    'Content-Security-Policy':
+      "default-src 'none'; style-src 'unsafe-inline'; img-src data:; frame-src 'self'; frame-ancestors 'none'",
   });
-  response.end(
-    mail
-      ? one(mail)
-      : found
-        ? list()
-        : page('Not found', '<p>There is no such mail. <a href="/">Mailbox</a></p>'),
-  );
-});
+  response.end(body ?? notFoundPage());
+}
 
-smtp.listen(Number(process.env.SMTP_PORT ?? 4182), '127.0.0.1');
-web.listen(Number(process.env.MAILBOX_PORT ?? 4181), '127.0.0.1');
+await readKept();
+const web = createServer(answer);
+for (const one of [smtp, web]) {
+  one.on('error', (error: Error) => {
+    process.stderr.write(`The mailbox: ${error.message}\n`);
+    if ('syscall' in error && error.syscall === 'listen') process.exit(1);
+  });
+}
+smtp.listen(smtpPort, '127.0.0.1');
+web.listen(webPort, '127.0.0.1');
 for (const signal of ['SIGINT', 'SIGTERM'] as const) {
-  process.on(signal, () => {
+  process.once(signal, () => {
     smtp.close(() => undefined);
     web.close();
     web.closeAllConnections();
-    process.exit(0);
+    void taking.finally(() => process.exit(0));
   });
 }

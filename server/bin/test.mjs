@@ -1,72 +1,85 @@
-import { spawn } from 'node:child_process';
-import { mkdtempSync, readFileSync, rmSync } from 'node:fs';
+import { existsSync, mkdtempSync, readFileSync, rmSync } from 'node:fs';
 import os from 'node:os';
 import path from 'node:path';
 import { check } from './check.mjs';
-import { checkNode, clientUp, debianUp, main, packagesUp, ROOT, say } from './setUp.mjs';
+import { databaseUp } from './database.mjs';
+import {
+  checkNode,
+  clientUp,
+  debianUp,
+  onPath,
+  orderlyEnd,
+  packagesUp,
+  say,
+  sentenceOf,
+  startChild,
+} from './setUp.mjs';
 
-const TEST_PROGRAMS = {
+/** What the tests run beside our own code, and the Debian package of each. */
+const PROGRAMS = {
   chromium: 'chromium',
   zbarimg: 'zbar-tools',
   pdftoppm: 'poppler-utils',
   wpa_passphrase: 'wpasupplicant',
+  hostapd: 'hostapd',
 };
 
-// Everything that is checked before a change counts, on a fresh machine too. Arguments choose test files.
-await main(async () => {
-  checkNode();
-  packagesUp();
-  const chosen = process.argv.slice(2);
-  debianUp(TEST_PROGRAMS, 'The test suite');
-  const folder = mkdtempSync(path.join(os.tmpdir(), 'quayword-run-'));
-  const { databaseUp } = await import('./database.mjs');
-  say('Starting a throw-away database…');
-  const database = await databaseUp({
-    dir: folder,
-    name: 'quayword',
-    log: () => undefined,
-    fast: true,
-    firstPort: 54480,
-  });
-  let code = 1;
-  try {
-    await clientUp();
-    const checks = chosen.length === 0 ? await check() : { passed: 0, failed: 0 };
-    const report = path.join(folder, 'report.json');
-    const vitest = await run(
-      [
-        'node_modules/vitest/vitest.mjs',
-        'run',
-        '--reporter=default',
-        '--reporter=json',
-        `--outputFile.json=${report}`,
-        ...chosen,
-      ],
-      { ...process.env, QW_TEST_OWNER_URL: database.ownerUrl, QW_TEST_APP_URL: database.appUrl },
-    );
-    const counts = JSON.parse(readFileSync(report, 'utf8'));
-    // A file that could not even be read has no tests of its own, and still failed.
-    const emptyFailures = counts.testResults.filter(
-      (file) => file.status === 'failed' && file.assertionResults.length === 0,
-    ).length;
-    const passed = counts.numPassedTests + checks.passed;
-    let failed = counts.numFailedTests + checks.failed + emptyFailures;
-    if (vitest !== 0 && failed === 0) failed = 1;
-    code = failed === 0 && passed > 0 ? 0 : 1;
-    say(`${passed} passed, ${failed} failed`);
-  } finally {
-    await database.stop();
-    rmSync(folder, { recursive: true, force: true });
-  }
-  process.exit(code);
-});
+// `npm test`: everything that is checked before a change counts, on a fresh machine too. Arguments choose test files
+// and leave the checks of the source out. The last line is always "N passed, N failed".
+const chosen = process.argv.slice(2);
+const children = [];
+const end = orderlyEnd({ children });
+end.onSignals((number) => 128 + number);
+const total = { passed: 0, failed: 0 };
+end.last(() => say(`${total.passed} passed, ${total.failed} failed`));
+try {
+  await everything();
+} catch (error) {
+  total.failed += 1;
+  if (!end.isStopping()) process.stderr.write(`${sentenceOf(error)}\n`);
+}
+await end.stop(total.failed === 0 && total.passed > 0 ? 0 : 1);
 
-function run(args, env) {
-  return new Promise((resolve) => {
-    const child = spawn(process.execPath, args, { cwd: ROOT, env, stdio: 'inherit' });
-    const pass = (signal) => child.kill(signal);
-    process.once('SIGINT', pass);
-    process.once('SIGTERM', pass);
-    child.once('exit', (status) => resolve(status ?? 1));
+async function everything() {
+  checkNode();
+  packagesUp({ needs: 'vitest' });
+  const missing = Object.keys(PROGRAMS).filter((program) => !onPath(program));
+  debianUp(
+    missing.map((program) => PROGRAMS[program]),
+    'The test suite',
+  );
+  const folder = mkdtempSync(path.join(os.tmpdir(), 'quayword-run-'));
+  end.last(() => rmSync(folder, { recursive: true, force: true }));
+  say('Starting a throw-away database…');
+  const starting = databaseUp({ dir: folder, name: 'quayword', log: say, fast: true, firstPort: 54480 });
+  end.last(() => starting.then((database) => database.discard()).catch(() => undefined));
+  const database = await starting;
+  await clientUp({ children });
+  if (chosen.length === 0) count(await check(children));
+  if (!end.isStopping()) count(await tests(database, path.join(folder, 'report.json')));
+}
+
+function count({ passed, failed }) {
+  total.passed += passed;
+  total.failed += failed;
+}
+
+/** Runs the test files; a file that could not even be read, and a run that broke off, count as failures too. */
+function tests({ ownerUrl, appUrl }, report) {
+  const args = ['--reporter=default', '--reporter=json', `--outputFile.json=${report}`, ...chosen];
+  const env = { ...process.env, QW_TEST_OWNER_URL: ownerUrl, QW_TEST_APP_URL: appUrl };
+  return new Promise((resolve, reject) => {
+    const child = startChild(['node_modules/vitest/vitest.mjs', 'run', ...args], env, { children });
+    child.once('error', reject);
+    child.once('exit', (code) => {
+      if (!existsSync(report)) return resolve({ passed: 0, failed: 1 });
+      const told = JSON.parse(readFileSync(report, 'utf8'));
+      const unread = told.testResults.filter(
+        (file) =>
+          file.status === 'failed' && !file.assertionResults.some(({ status }) => status === 'failed'),
+      ).length;
+      const failed = told.numFailedTests + unread;
+      resolve({ passed: told.numPassedTests, failed: code !== 0 && failed === 0 ? 1 : failed });
+    });
   });
 }

@@ -27,7 +27,8 @@ async function asOwner(work: (client: Client) => Promise<void>): Promise<void> {
 /** A database of its own for one test file, cloned from the migrated template and dropped at the end. */
 export function testDatabase(): TestDatabase {
   const database: TestDatabase = {
-    name: `qw_test_${randomBytes(6).toString('hex')}`,
+    // The end of the name is the second it was made in, so that a later run can tell what was left behind.
+    name: `qw_test_${randomBytes(6).toString('hex')}_${Math.floor(Date.now() / 1000).toString(36)}`,
     ownerUrl: '',
     appUrl: '',
   };
