@@ -22,7 +22,11 @@ export class Database {
       dialect: 'postgres',
       logging: false,
       pool: { max: options.poolMax ?? 10, min: 0, acquire: 3_000, idle: 10_000 },
-      dialectOptions: { application_name: 'quayword', statement_timeout: 30_000 },
+      dialectOptions: {
+        application_name: 'quayword',
+        statement_timeout: 30_000,
+        idle_in_transaction_session_timeout: 30_000,
+      },
       define: { underscored: true, timestamps: false, freezeTableName: true },
       minifyAliases: false,
     });

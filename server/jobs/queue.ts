@@ -7,7 +7,11 @@ import type { QueueName } from './queues.ts';
 export interface Queue {
   readonly enqueue: Enqueue;
   /** Runs `work` for each job of the queue; a thrown error is retried by the queue's own rule. */
-  work(name: QueueName, work: (data: unknown, jobId: string) => Promise<void>): Promise<void>;
+  work(
+    name: QueueName,
+    work: (data: unknown, jobId: string) => Promise<void>,
+    options?: { readonly batchSize?: number },
+  ): Promise<void>;
   stop(): Promise<void>;
 }
 
@@ -46,14 +50,10 @@ export async function startQueue(
         },
       });
     },
-    work: async (name, work) => {
-      await boss.work(
-        name,
-        { batchSize: 5, pollingIntervalSeconds: options.pollSeconds ?? 2 },
-        async (jobs) => {
-          for (const job of jobs) await work(job.data, job.id);
-        },
-      );
+    work: async (name, work, { batchSize = 5 } = {}) => {
+      await boss.work(name, { batchSize, pollingIntervalSeconds: options.pollSeconds ?? 2 }, async (jobs) => {
+        for (const job of jobs) await work(job.data, job.id);
+      });
     },
     stop: () => boss.stop({ graceful: true, timeout: 10_000, wait: true }),
   };

@@ -11,6 +11,6 @@ export async function startWorkers(services: Services, queue: Queue): Promise<vo
   await queue.work('mail.send', async (data) => {
     await sendMail(services, transport, z.object({ id: z.uuid() }).parse(data).id);
   });
-  await queue.work('rehearsal.carryOut', (data) => carryOut(services, data));
+  await queue.work('rehearsal.carryOut', (data) => carryOut(services, data), { batchSize: 25 });
   await resumeDeliveries(services);
 }

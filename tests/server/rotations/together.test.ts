@@ -1,0 +1,60 @@
+import { describe, expect, test } from 'vitest';
+import { useApp } from '../../support/app.ts';
+import {
+  childEnv,
+  countIn,
+  judge,
+  layDueChanges,
+  startServerProcess,
+  tryFault,
+  until,
+} from '../../support/seaTrial.ts';
+
+const app = useApp();
+
+describe('several servers, and servers that die', () => {
+  test('two servers, 200 changes due: each happens exactly once (R51)', async () => {
+    app.clock.set(new Date());
+    const ids = await layDueChanges(app.services, 200);
+    const env = childEnv(app.services.config);
+    const servers = [startServerProcess(env), startServerProcess(env)];
+    try {
+      await until(120, 'all 200 changes are in force', async () => {
+        return (await countIn(app.services, ids, 'live')) === 200 || servers.some((one) => one.isOver());
+      });
+    } finally {
+      for (const server of servers) server.process.kill('SIGTERM');
+    }
+    expect(await Promise.all(servers.map((server) => server.ended))).toEqual(['0', '0']);
+    expect(await judge(app.services, ids)).toEqual({ lost: [], lockedOut: [] });
+  }, 180_000);
+
+  test('kill -9 in the middle, from outside: nothing is lost, nothing happens twice (R52)', async () => {
+    app.clock.set(new Date());
+    const ids = await layDueChanges(app.services, 40);
+    const env = childEnv(app.services.config);
+    const first = startServerProcess(env);
+    await until(60, 'some changes are in force and some are not', async () => {
+      return (await countIn(app.services, ids, 'live')) >= 5;
+    });
+    first.process.kill('SIGKILL');
+    expect(await first.ended).toBe('SIGKILL');
+    const left = 40 - (await countIn(app.services, ids, 'live'));
+    expect(left).toBeGreaterThan(0);
+    const second = startServerProcess(env);
+    // Recovery is to take at most a minute (R52).
+    await until(60, 'the rest is in force', async () => (await countIn(app.services, ids, 'live')) === 40);
+    second.process.kill('SIGTERM');
+    expect(await second.ended).toBe('0');
+    expect(await judge(app.services, ids)).toEqual({ lost: [], lockedOut: [] });
+  }, 180_000);
+
+  test.each(['S1', 'S3', 'S6', 'S9:2'])(
+    'a server that dies at %s is made up for by the next one (R52)',
+    async (point) => {
+      app.clock.set(new Date());
+      expect(await tryFault(app.services, point, 8)).toEqual({ lost: [], lockedOut: [], fired: true });
+    },
+    180_000,
+  );
+});
