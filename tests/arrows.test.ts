@@ -13,7 +13,7 @@ interface File {
 
 /** What a source file imports of our own, as paths from the project's folder. `type` imports count too. */
 function importsOf(name: string, text: string): string[] {
-  const code = text.replace(/\/\*[\s\S]*?\*\//g, '').replace(/^\s*\/\/.*$/gm, '');
+  const code = text.replace(/^\s*\/\*[\s\S]*?\*\//gm, '').replace(/^\s*\/\/.*$/gm, '');
   const found = [...code.matchAll(/(?:from|import)\s*\(?\s*['"](\.{1,2}\/[^'"]+)['"]/g)];
   return found.map(([, target = '']) =>
     path.posix.normalize(path.posix.join(path.posix.dirname(name), target)),
@@ -105,6 +105,11 @@ describe('imports', () => {
         "import x from '../c.ts';\nawait import('./d.tsx');\nexport { y } from '../../shared/e.ts'",
       ),
     ).toEqual(['src/c.ts', 'src/a/d.tsx', 'shared/e.ts']);
+    // A path pattern is no comment, and what a comment says is no import.
+    expect(
+      importsOf('src/a.ts', "const glob = 'src/**/*.ts';\nimport x from './b.ts';\nconst c = '*/';"),
+    ).toEqual(['src/b.ts']);
+    expect(importsOf('src/a.ts', "/** import x from './b.ts' */\n// import y from './c.ts'")).toEqual([]);
     expect(wrongWay('src/features/cards/a.ts', 'src/features/log/b.ts')).not.toBeNull();
     expect(wrongWay('src/features/cards/a.ts', 'src/features/cards/b.ts')).toBeNull();
     expect(wrongWay('shared/a.ts', 'server/b.ts')).not.toBeNull();

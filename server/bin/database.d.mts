@@ -8,6 +8,8 @@ export function databaseUp(options: {
 }): Promise<{
   ownerUrl: string;
   appUrl: string;
+  /** Where the server's files are: below `dir` unless its user may not walk there. */
+  dataDir: string;
   /** Ends the server if this call started it. */
   stop: () => Promise<void>;
   /** `stop`, and the data goes too. */

@@ -1,4 +1,4 @@
-import { createHash } from 'node:crypto';
+import { createHash, randomUUID } from 'node:crypto';
 import {
   chmodSync,
   chownSync,
@@ -29,7 +29,7 @@ const APP = 'quayword_app';
  * `name`. `fast` gives up durability, for tests. `stop` ends the server only if this call started it; `discard`
  * also removes its data. Throws {@link SetUpError} saying what to do.
  * @param {{dir: string, name: string, log: (sentence: string) => void, fast?: boolean, firstPort?: number}} options
- * @returns {Promise<{ownerUrl: string, appUrl: string, stop: () => Promise<void>, discard: () => Promise<void>}>}
+ * @returns {Promise<{ownerUrl: string, appUrl: string, dataDir: string, stop: () => Promise<void>, discard: () => Promise<void>}>}
  */
 export async function databaseUp({ dir: wanted, name, log, fast = false, firstPort = 54380 }) {
   if (!/^[a-z][a-z0-9_]*$/.test(name)) throw new SetUpError(`"${name}" is no name for a database.`);
@@ -73,9 +73,10 @@ export async function databaseUp({ dir: wanted, name, log, fast = false, firstPo
       ownerUrl: url(OWNER),
       appUrl: url(APP),
       stop,
+      dataDir: data,
       discard: async () => {
         await stop();
-        rmSync(data, { recursive: true, force: true });
+        rmSync(path.dirname(data) === dir ? data : path.dirname(data), { recursive: true, force: true });
       },
     };
   });
@@ -84,7 +85,7 @@ export async function databaseUp({ dir: wanted, name, log, fast = false, firstPo
 /** One process at a time makes or starts the server of a folder; others wait and then find it running. */
 async function alone(dir, work) {
   const lock = path.join(dir, 'pg.lock');
-  const mine = `${lock}.${process.pid}`;
+  const mine = `${lock}.${randomUUID()}`;
   writeFileSync(mine, String(process.pid));
   try {
     for (let held = false; !held; ) {
