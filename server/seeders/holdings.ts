@@ -1,19 +1,6 @@
-import { randomUUID } from 'node:crypto';
-import type { LaidNetwork, LaidVessel, Laying } from './layVessel.ts';
-
-type Channel = 'card' | 'screen' | 'own_page' | 'reveal';
-
-export interface Given {
-  readonly kind: 'guest' | 'crew';
-  readonly id: string;
-  readonly name: string | null;
-  readonly label?: string;
-  readonly channel: Channel;
-  readonly at: Date;
-  readonly departedAt?: Date | null;
-  readonly card?: { readonly id: string; readonly serial: string };
-  readonly by?: { readonly id: string; readonly name: string } | null;
-}
+import { markDeparted } from '../handovers/holders.ts';
+import { recordHandover } from '../handovers/recordHandover.ts';
+import type { Given, LaidNetwork, LaidVessel, Laying } from './laying.ts';
 
 const LOG_KIND = {
   card: 'handover.card',
@@ -24,33 +11,16 @@ const LOG_KIND = {
 
 /** Somebody was given a network's passphrase in force: the receipt, who holds it, and the log's line. */
 export function layHandover(
-  { rows, log }: Laying,
+  { handovers, log }: Laying,
   vessel: LaidVessel,
   network: LaidNetwork,
   given: Given,
 ): void {
-  rows.add('handovers', {
-    id: randomUUID(),
-    vessel_id: vessel.id,
-    network_id: network.id,
-    passphrase_id: network.passphraseId,
-    holder_kind: given.kind,
-    holder_id: given.id,
-    channel: given.channel,
-    card_id: given.card?.id ?? null,
-    by_person: given.by?.id ?? null,
-    at: given.at,
-    undone_at: null,
-  });
-  rows.add('holders', {
-    passphrase_id: network.passphraseId,
-    holder_kind: given.kind,
-    holder_id: given.id,
-    vessel_id: vessel.id,
-    network_id: network.id,
-    since: given.at,
-    through: given.channel,
-    departed_at: given.departedAt ?? null,
+  handovers.push({
+    ...given,
+    vesselId: vessel.id,
+    networkId: network.id,
+    passphraseId: network.passphraseId,
   });
   log.push({
     vesselId: vessel.id,
@@ -64,6 +34,25 @@ export function layHandover(
       ? { audience: network.audience, serial: given.card.serial }
       : { audience: network.audience },
   });
+}
+
+/** Writes the handovers down by the code that writes everybody's, and then who has left since. */
+export async function writeHandovers({ services, tx, handovers }: Laying): Promise<void> {
+  for (const given of handovers) {
+    await recordHandover(services, tx, {
+      vesselId: given.vesselId,
+      networkId: given.networkId,
+      passphraseId: given.passphraseId,
+      holder: { kind: given.kind, id: given.id },
+      channel: given.channel,
+      cardId: given.card?.id ?? null,
+      byPerson: given.by?.id ?? null,
+      at: given.at,
+    });
+  }
+  for (const { departedAt, vesselId, kind, id } of handovers) {
+    if (departedAt) await markDeparted(services, tx, { vesselId, kind, ids: [id] }, departedAt);
+  }
 }
 
 /** The whole crew reads the crew network's code on their own pages within two days of its change. */

@@ -11,7 +11,8 @@ import { appendLog, type LogEvent } from '../handovers/appendLog.ts';
 import type { Services } from '../services.ts';
 import { minutes } from './calendar.ts';
 import { dice } from './dice.ts';
-import type { LaidVessel, Laying } from './layVessel.ts';
+import { writeHandovers } from './holdings.ts';
+import type { LaidVessel, Laying } from './laying.ts';
 import { layOrdinary } from './ordinary.ts';
 import { DEMO_PEOPLE, type DemoPerson, demoPassword } from './people.ts';
 import { Rows } from './rows.ts';
@@ -64,7 +65,7 @@ export async function layDemo(
       created_at: minutes(now, -1_000_000),
     });
     await rows.write(services, tx);
-    const laying: Laying = { services, tx, now, dice: dice(SEED), rows, log, dealerId };
+    const laying: Laying = { services, tx, now, dice: dice(SEED), rows, log, handovers: [], dealerId };
     const vessels = [
       await layTamarisk(laying),
       await laySolveigMaren(laying),
@@ -74,6 +75,7 @@ export async function layDemo(
     ];
     await layOrdinary(laying);
     await rows.write(services, tx);
+    await writeHandovers(laying);
     for (const { person, password } of signIns) {
       await layPerson(laying, person, await hashPassword(services.config, password), vessels);
     }

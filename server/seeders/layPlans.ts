@@ -1,7 +1,7 @@
 import { randomUUID } from 'node:crypto';
 import type { Audience } from '../../shared/rules/permissions.ts';
 import { type PlanInput, planNext } from '../../shared/rules/planning.ts';
-import type { LaidVessel, Laying } from './layVessel.ts';
+import type { LaidVessel, Laying } from './laying.ts';
 
 /** What a vessel's plan looks at besides its networks. */
 export interface Aboard {
@@ -25,10 +25,10 @@ export function layPlans(
       policy: {
         ageLimitDays: network.limitDays,
         quietHours: network.quietHours,
-        onPartyDeparture: network.audience === 'guest',
-        onSignOff: network.audience === 'crew',
-        onLostCard: true,
-        onLeak: true,
+        onPartyDeparture: network.movesUp && network.audience === 'guest',
+        onSignOff: network.movesUp && network.audience === 'crew',
+        onLostCard: network.movesUp,
+        onLeak: network.movesUp,
       },
       liveAt: network.liveAt,
       zones: vessel.calendar.zones,

@@ -1,88 +1,9 @@
 import { randomUUID } from 'node:crypto';
-import type { Security, Source } from '../../shared/api/common.ts';
-import type { Audience } from '../../shared/rules/permissions.ts';
-import type { QuietHours } from '../../shared/rules/quietHours.ts';
-import type { Tx } from '../db/connection.ts';
-import type { LogEvent } from '../handovers/appendLog.ts';
-import type { Services } from '../services.ts';
 import { Calendar, minutes } from './calendar.ts';
-import type { Dice } from './dice.ts';
+import type { CrewPlan, LaidNetwork, LaidVessel, Laying, NetworkPlan, VesselPlan } from './laying.ts';
 import { layRotations, sealGenerations } from './passphrases.ts';
-import type { Rows } from './rows.ts';
 
-/** What the whole laying shares. */
-export interface Laying {
-  readonly services: Services;
-  readonly tx: Tx;
-  readonly now: Date;
-  readonly dice: Dice;
-  readonly rows: Rows;
-  readonly log: LogEvent[];
-  readonly dealerId: string;
-}
-
-export interface CrewPlan {
-  readonly name: string;
-  readonly position: string;
-  readonly department?: string;
-  readonly email?: string;
-  readonly signedOnDays: number;
-  readonly signedOffAt?: Date;
-}
-
-export interface NetworkPlan {
-  readonly audience: Audience;
-  readonly ssid: string;
-  readonly security: Security;
-  readonly liveAt: Date;
-  readonly limitDays: number;
-  /** Typed in by hand, with the guesses it is worth in bits; made by Quayword where there is none. */
-  readonly typed?: { readonly passphrase: string; readonly bits: number };
-  readonly quietHours: readonly QuietHours[];
-}
-
-export interface VesselPlan {
-  readonly name: string;
-  readonly kind: string;
-  readonly lengthM: number;
-  readonly guestsMax: number;
-  readonly homePort: string;
-  readonly ownerName: string;
-  readonly lying: string;
-  readonly zone: string;
-  readonly source: Source;
-  readonly driver: 'by_hand' | 'rehearsal';
-  readonly lastHeardAt: Date;
-  readonly lastSerial?: number;
-  readonly accessPoints: readonly { readonly name: string; readonly deck?: string }[];
-  readonly networks: readonly NetworkPlan[];
-  readonly crew: readonly CrewPlan[];
-}
-
-export interface LaidNetwork extends NetworkPlan {
-  readonly id: string;
-  readonly passphraseId: string;
-}
-
-export interface LaidVessel {
-  readonly id: string;
-  readonly plan: VesselPlan;
-  readonly calendar: Calendar;
-  readonly accessPointIds: readonly string[];
-  readonly crew: readonly (CrewPlan & { readonly id: string })[];
-  readonly networks: readonly LaidNetwork[];
-}
-
-export const DEFAULT_QUIET: readonly QuietHours[] = [
-  { days: [1, 2, 3, 4, 5, 6, 7], from: '10:30', to: '11:30' },
-];
 const LONG_AGO = new Date('2020-01-01T00:00:00Z');
-
-export const networkOf = (vessel: LaidVessel, audience: Audience): LaidNetwork => {
-  const found = vessel.networks.find((network) => network.audience === audience);
-  if (!found) throw new Error(`${vessel.plan.name} has no ${audience} network`);
-  return found;
-};
 
 /** A vessel with its crew, networks, passphrases in force and how they came into force. */
 export async function layVessel(laying: Laying, plan: VesselPlan): Promise<LaidVessel> {
@@ -162,10 +83,10 @@ function layNetwork({ rows, now }: Laying, vesselId: string, created: Date, netw
     least_bits: 64,
     words: 5,
     quiet_hours: network.quietHours,
-    on_party_departure: network.audience === 'guest',
-    on_sign_off: network.audience === 'crew',
-    on_lost_card: true,
-    on_leak: true,
+    on_party_departure: network.movesUp && network.audience === 'guest',
+    on_sign_off: network.movesUp && network.audience === 'crew',
+    on_lost_card: network.movesUp,
+    on_leak: network.movesUp,
     updated_at: created,
   });
   return id;

@@ -11,15 +11,9 @@ import {
   KINDS,
   ORDINARY_VESSELS,
 } from './invented.ts';
+import { type CrewPlan, DEFAULT_QUIET, type Laying, type NetworkPlan, networkOf } from './laying.ts';
 import { layPlans } from './layPlans.ts';
-import {
-  type CrewPlan,
-  DEFAULT_QUIET,
-  type Laying,
-  layVessel,
-  type NetworkPlan,
-  networkOf,
-} from './layVessel.ts';
+import { layVessel } from './layVessel.ts';
 import { layParty } from './parties.ts';
 
 const FROM = new Date('2020-01-01T00:00:00Z');
@@ -66,6 +60,7 @@ async function layOne(laying: Laying, name: string, index: number): Promise<void
     liveAt: calendar.aged(age(audience), '10:30'),
     limitDays: LIMITS[audience],
     quietHours: DEFAULT_QUIET,
+    movesUp: true,
   });
   const vessel = await layVessel(laying, {
     name,

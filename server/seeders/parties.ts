@@ -1,6 +1,6 @@
 import { randomUUID } from 'node:crypto';
 import { earlier, minutes } from './calendar.ts';
-import type { LaidVessel, Laying } from './layVessel.ts';
+import type { LaidVessel, Laying } from './laying.ts';
 
 export interface GuestPlan {
   /** Null where the guest asked to be listed without one. */

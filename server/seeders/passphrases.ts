@@ -7,7 +7,7 @@ import { contextWords, scoreTyped } from '../passphrases/score.ts';
 import { sealPassphrase } from '../passphrases/sealPassphrase.ts';
 import { WORDS } from '../passphrases/wordList.ts';
 import { minutes } from './calendar.ts';
-import type { Laying, NetworkPlan } from './layVessel.ts';
+import type { Laying, NetworkPlan } from './laying.ts';
 
 const DAY_MINUTES = 1440;
 /** What people make up that is guessed in about so long: words run together and digits (measured by the scorer). */

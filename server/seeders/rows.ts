@@ -23,8 +23,6 @@ const TABLES = [
   'observations',
   'rehearsal_access_points',
   'cards',
-  'handovers',
-  'holders',
 ] as const;
 export type Table = (typeof TABLES)[number];
 export type RowValue = string | number | boolean | Date | null | readonly object[] | readonly string[];

@@ -2,7 +2,7 @@ import { randomUUID } from 'node:crypto';
 import { generate } from '../passphrases/generate.ts';
 import { sealPassphrase } from '../passphrases/sealPassphrase.ts';
 import { minutes } from './calendar.ts';
-import { type LaidVessel, type Laying, networkOf } from './layVessel.ts';
+import { type LaidVessel, type Laying, networkOf } from './laying.ts';
 import { rounded } from './passphrases.ts';
 
 const DAY = 1440;

@@ -1,16 +1,16 @@
 import { randomUUID } from 'node:crypto';
 import { Calendar, minutes } from './calendar.ts';
 import { layCrewHoldings, layHandover } from './holdings.ts';
-import { type Aboard, layPlans } from './layPlans.ts';
 import {
   DEFAULT_QUIET,
   type LaidVessel,
   type Laying,
-  layVessel,
   type NetworkPlan,
   networkOf,
   type VesselPlan,
-} from './layVessel.ts';
+} from './laying.ts';
+import { type Aboard, layPlans } from './layPlans.ts';
+import { layVessel } from './layVessel.ts';
 import { inventedCrew } from './ordinary.ts';
 import { layParty } from './parties.ts';
 import { madeUp } from './passphrases.ts';
@@ -46,6 +46,7 @@ function networksOf(
     limitDays,
     typed: typed[audience],
     quietHours: DEFAULT_QUIET,
+    movesUp: true,
   });
   return [
     plan('owner', name, owner, 365),
@@ -86,11 +87,12 @@ export async function laySolveigMaren(laying: Laying): Promise<LaidVessel> {
         signedOffAt: left[index],
       })),
     ],
+    // And nobody has said what should move a change up.
     networks: networksOf(name, calendar, [212, 61, 388], {
       owner: await madeUp('years', 'wpa2', words),
       guest: await madeUp('months', 'wpa2', words),
       crew: await madeUp('hours', 'wpa2', words),
-    }),
+    }).map((network) => ({ ...network, movesUp: false })),
   });
   layCrewHoldings(laying, vessel, networkOf(vessel, 'crew'));
   layGoneGuests(laying, vessel, 3, 20);

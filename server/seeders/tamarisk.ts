@@ -1,15 +1,9 @@
 import { randomUUID } from 'node:crypto';
 import { Calendar, earlier, minutes } from './calendar.ts';
 import { layCrewHoldings } from './holdings.ts';
+import { DEFAULT_QUIET, type LaidVessel, type Laying, networkOf, type VesselPlan } from './laying.ts';
 import { layPlans } from './layPlans.ts';
-import {
-  DEFAULT_QUIET,
-  type LaidVessel,
-  type Laying,
-  layVessel,
-  networkOf,
-  type VesselPlan,
-} from './layVessel.ts';
+import { layVessel } from './layVessel.ts';
 import { layParty } from './parties.ts';
 import { TAMARISK_PEOPLE } from './people.ts';
 import { FIRST_SERIAL, layCards, layOwnerHoldings, layOwnersChange } from './tamariskAboard.ts';
@@ -104,7 +98,7 @@ function plan(calendar: Calendar, now: Date): VesselPlan {
       signedOffAt: second,
     },
   ];
-  const network = { security: 'wpa2' as const, quietHours: DEFAULT_QUIET };
+  const network = { security: 'wpa2' as const, quietHours: DEFAULT_QUIET, movesUp: true };
   return {
     name: 'Tamarisk',
     kind: 'motor yacht',

@@ -1,7 +1,7 @@
 import { randomUUID } from 'node:crypto';
 import { earlier, minutes } from './calendar.ts';
-import { type Given, layHandover } from './holdings.ts';
-import { type LaidVessel, type Laying, networkOf } from './layVessel.ts';
+import { layHandover } from './holdings.ts';
+import { type Given, type LaidVessel, type Laying, networkOf } from './laying.ts';
 import type { LaidGuest } from './parties.ts';
 
 /** Serial of the first card printed for today's party. */

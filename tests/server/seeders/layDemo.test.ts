@@ -2,6 +2,7 @@ import { afterAll, beforeAll, describe, expect, test } from 'vitest';
 import { passwordMatches } from '../../../server/auth/passwords.ts';
 import { closeScorer } from '../../../server/passphrases/score.ts';
 import { replanNetwork } from '../../../server/rotations/replan.ts';
+import { sweep } from '../../../server/rotations/sweep.ts';
 import { type DemoSignIn, layDemo } from '../../../server/seeders/layDemo.ts';
 import type { FleetView } from '../../../shared/api/fleet.ts';
 import { type TestApp, useApp } from '../../support/app.ts';
@@ -188,6 +189,10 @@ describe.each([
         true,
       );
     }
+  });
+
+  test('the clock’s first look plans what was left without a plan, and starts nothing', async () => {
+    expect(await sweep(app.services)).toMatchObject({ planned: 3, handedOut: 0, held: 0, unknown: 0 });
   });
 
   test('is laid once', async () => {
