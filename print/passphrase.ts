@@ -1,6 +1,7 @@
 import { type Fitted, fitText, type Room, SEPARATOR } from './fit.ts';
 import { textWidth } from './fonts.ts';
 import { INK, operand, type Pen, SOFT, type Span } from './pen.ts';
+import { EDGE_SHIFT_PT } from './qr.ts';
 
 /** Longest passphrase, IEEE 802.11 (8 to 63 characters), needs sizes a name never does. */
 export function fitPassphrase(text: string, room: Room): Fitted | null {
@@ -85,5 +86,6 @@ export function drawSymbol(
   y: number,
 ): void {
   const module = operand(symbol.modulePt);
-  pen.raw(`q 0 g ${module} 0 0 ${module} ${operand(x)} ${operand(y)} cm\n${symbol.path} Q`);
+  const [left, top] = [operand(x + EDGE_SHIFT_PT), operand(y + EDGE_SHIFT_PT)];
+  pen.raw(`q 0 g ${module} 0 0 ${module} ${left} ${top} cm\n${symbol.path} Q`);
 }

@@ -82,13 +82,10 @@ function dark(page: Grey, x: number, y: number): boolean {
   return (page.grey[y * page.width + x] ?? 255) < 128;
 }
 
-/** pdftoppm greys a dot by an eighth when an edge lies on its border; that is no ink. */
-const TOUCHED = 223;
-
 /** The edges are part of the ring. False as soon as it leaves the page, too. */
 function ringIsWhite(page: Grey, x0: number, y0: number, x1: number, y1: number): boolean {
   if (x0 < 0 || y0 < 0 || x1 >= page.width || y1 >= page.height) return false;
-  const at = (x: number, y: number) => (page.grey[y * page.width + x] ?? 0) >= TOUCHED;
+  const at = (x: number, y: number) => page.grey[y * page.width + x] === 255;
   for (let x = x0; x <= x1; x++) if (!at(x, y0) || !at(x, y1)) return false;
   for (let y = y0; y <= y1; y++) if (!at(x0, y) || !at(x1, y)) return false;
   return true;
