@@ -1,7 +1,9 @@
 import { createHash, randomBytes, randomUUID } from 'node:crypto';
 import canonicalize from 'canonicalize';
+import { DatabaseError } from 'sequelize';
 import type { LogKind } from '../../shared/rules/logKinds.ts';
 import type { Tx } from '../db/connection.ts';
+import { AppError } from '../errors.ts';
 import type { Services } from '../services.ts';
 
 /** What an entry is about. */
@@ -32,7 +34,8 @@ interface Head {
 /** The hash every vessel's chain starts from. */
 export const GENESIS = createHash('sha256').update('Quayword log').digest();
 
-const commitment = (salt: Buffer, name: string) =>
+/** What an entry says about a name: SHA-256 over a salt of its own and the name, in hexadecimal. */
+export const commitment = (salt: Buffer, name: string) =>
   createHash('sha256').update(salt).update(name).digest('hex');
 
 export interface ChainedFields {
@@ -59,10 +62,35 @@ export function entryHash(prev: Buffer, fields: ChainedFields): Buffer {
 /**
  * Appends entries to their vessels' chains inside the caller's transaction, so an entry exists exactly when
  * its effect does. Heads are locked in the order of the vessels' ids, so two writers cannot wait for each other.
- * Names are committed by a salted hash and kept apart, where they can be erased.
+ * Names are committed by a salted hash and kept apart, where they can be erased. Throws `unavailable` when the
+ * log cannot be written.
  */
 export async function appendLog(services: Services, tx: Tx, events: readonly LogEvent[]): Promise<string[]> {
   if (events.length === 0) return [];
+  try {
+    return await append(services, tx, events);
+  } catch (error) {
+    throw unwritable(services, error);
+  }
+}
+
+/**
+ * What cannot be written down does not happen: a log without its rights, its space or its shape refuses the
+ * whole verb. Locks that met and a database that is away are told as they are everywhere.
+ */
+function unwritable(services: Services, error: unknown): unknown {
+  const original = error instanceof DatabaseError ? error.original : null;
+  const code = original && 'code' in original ? String(original.code) : '';
+  if (!/^(42|53|23|58|22|P0)/.test(code)) return error;
+  services.log.error({ event: 'log_unwritable', state: code }, 'the log cannot be written');
+  return new AppError(
+    'unavailable',
+    'The log cannot be written just now, so nothing was shown or changed. Tell whoever runs the server, then try again.',
+    { retryAfter: 30, cause: error },
+  );
+}
+
+async function append(services: Services, tx: Tx, events: readonly LogEvent[]): Promise<string[]> {
   const { db } = services;
   const vesselIds = [...new Set(events.map((event) => event.vesselId))].sort();
   await db.run(
