@@ -23,14 +23,16 @@ const ONE_MAILBOX = /^[^\s@,;:<>()[\]"\\]{1,64}@[^\s@,;:<>()[\]"\\]{1,253}$/;
 
 export type Send = Transporter;
 
-export function mailTransport(services: Services): Send | null {
-  return services.config.smtpUrl
-    ? createTransport(services.config.smtpUrl, {
-        connectionTimeout: 10_000,
-        greetingTimeout: 10_000,
-        socketTimeout: 20_000,
-      } as object)
-    : null;
+/** The configured mail server, or null. `patience` is how long it may be silent, in milliseconds. */
+export function mailTransport(services: Services, patience = 10_000): Send | null {
+  const { smtpUrl } = services.config;
+  if (!smtpUrl) return null;
+  return createTransport({
+    url: smtpUrl,
+    connectionTimeout: patience,
+    greetingTimeout: patience,
+    socketTimeout: 2 * patience,
+  });
 }
 
 /**
@@ -50,9 +52,10 @@ export async function sendMail(
        WHERE id = $id AND sent_at IS NULL AND given_up_at IS NULL FOR UPDATE SKIP LOCKED`,
       { id },
     );
-    if (!row || !isMailKind(row.kind)) return 'done';
+    if (!row) return 'done';
     const now = clock.now();
     try {
+      if (!isMailKind(row.kind)) throw Object.assign(new Error('Unknown kind'), { code: 'UNKNOWN_KIND' });
       if (!transport) throw Object.assign(new Error('No mail server is set'), { code: 'NO_SMTP_URL' });
       if (!ONE_MAILBOX.test(row.recipient))
         throw Object.assign(new Error('Not one mailbox'), { code: 'BAD_RECIPIENT' });
@@ -77,7 +80,9 @@ export async function sendMail(
       const code = error instanceof Error && 'code' in error ? String(error.code) : 'unknown';
       const tries = row.tries + 1;
       const final = tries >= TRIES_MAX;
-      const pause = Math.min(LONGEST_PAUSE_MS, FIRST_PAUSE_MS * 2 ** (tries - 1));
+      // Spread by a quarter either way, so that a mail server that comes back is not met by all at once.
+      const pause =
+        Math.min(LONGEST_PAUSE_MS, FIRST_PAUSE_MS * 2 ** (tries - 1)) * (0.75 + Math.random() / 2);
       await db.run(
         tx,
         `UPDATE mail_outbox SET tries = $tries, last_error = $code, next_try_at = $next,
