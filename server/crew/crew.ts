@@ -2,11 +2,13 @@ import { randomUUID } from 'node:crypto';
 import type { z } from 'zod';
 import { type Language, language } from '../../shared/api/common.ts';
 import type { CrewView, crewBody } from '../../shared/api/crew.ts';
+import { may, type VesselRole } from '../../shared/rules/permissions.ts';
 import { endRoles } from '../auth/members.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, invalid, notFound } from '../errors.ts';
 import { appendLog, type LogEvent } from '../handovers/appendLog.ts';
 import { markBack, markDeparted } from '../handovers/holders.ts';
+import { lockLog } from '../rotations/lockRotation.ts';
 import { replanNetwork } from '../rotations/replan.ts';
 import type { Services } from '../services.ts';
 
@@ -14,7 +16,7 @@ export interface Change {
   readonly services: Services;
   readonly tx: Tx;
   readonly vesselId: string;
-  readonly actor: { readonly personId: string; readonly name: string };
+  readonly actor: { readonly personId: string; readonly name: string; readonly roles: readonly VesselRole[] };
   readonly now: Date;
 }
 
@@ -111,12 +113,39 @@ export async function addCrew(change: Change, body: Body): Promise<CrewView> {
   await services.db.run(
     tx,
     `INSERT INTO crew_members(id, vessel_id, person_id, name, position, department, email, language, signed_on_at, created_at, updated_at)
-     VALUES ($id, $vessel, (SELECT p.id FROM people p JOIN memberships m ON m.person_id = p.id AND m.vessel_id = $vessel AND m.ended_at IS NULL WHERE p.email = $email LIMIT 1),
-       $name, $position, $department, $email, $language, $signedOnAt, $now, $now)`,
+     VALUES ($id, $vessel, NULL, $name, $position, $department, $email, $language, $signedOnAt, $now, $now)`,
     { ...body, signedOnAt: new Date(body.signedOnAt), id, vessel: vesselId, now },
   );
+  await linkAccount(change, id);
   await log(change, 'crew.signed_on', { id, name: body.name });
   return present(await readMember(change, id));
+}
+
+/**
+ * Makes the account with the entry's mail address theirs, where it has a role here and no other entry does. Looked
+ * at again whenever the entry is used, because an account may come after the entry.
+ */
+async function linkAccount({ services, tx, vesselId }: Change, id: string): Promise<void> {
+  await services.db.run(
+    tx,
+    `UPDATE crew_members c SET person_id = p.id FROM people p
+     WHERE c.id = $id AND c.vessel_id = $vessel AND c.person_id IS NULL AND p.email = c.email
+       AND EXISTS (SELECT 1 FROM memberships m WHERE m.person_id = p.id AND m.vessel_id = $vessel AND m.ended_at IS NULL)
+       AND NOT EXISTS (SELECT 1 FROM crew_members o WHERE o.vessel_id = $vessel AND o.person_id = p.id AND o.signed_off_at IS NULL)`,
+    { id, vessel: vesselId },
+  );
+}
+
+/** Ending a captain's roles takes somebody who may give and end roles. */
+async function refuseCaptain({ services, tx, vesselId, actor }: Change, personId: string): Promise<void> {
+  if (may(actor.roles, 'members.manage')) return;
+  const captain = await services.db.row(
+    tx,
+    "SELECT 1 FROM memberships WHERE person_id = $person AND vessel_id = $vessel AND role = 'captain' AND ended_at IS NULL",
+    { person: personId, vessel: vesselId },
+  );
+  if (captain)
+    throw new AppError('forbidden', 'Only a captain signs a captain off, because it ends that role.');
 }
 
 async function refuseSameMail(
@@ -144,6 +173,7 @@ export async function changeCrew(change: Change, id: string, body: Body): Promis
        signed_on_at = $signedOnAt, updated_at = $now WHERE id = $id AND vessel_id = $vessel`,
     { ...body, signedOnAt: new Date(body.signedOnAt), id, vessel: vesselId, now },
   );
+  await linkAccount(change, id);
   await log(change, 'crew.changed', { id, name: body.name });
   return present(await readMember(change, id));
 }
@@ -157,8 +187,11 @@ export async function signOff(
   id: string,
 ): Promise<{ member: CrewView; exposed: { network: string; changeAt: string | null }[] }> {
   const { services, tx, vesselId, now } = change;
+  await lockLog(services, tx, vesselId);
+  await linkAccount(change, id);
   const member = await readMember(change, id);
   if (member.signed_off_at) throw new AppError('conflict', `${member.name} is signed off already.`);
+  if (member.person_id) await refuseCaptain(change, member.person_id);
   await services.db.run(
     tx,
     'UPDATE crew_members SET signed_off_at = $now, updated_at = $now WHERE id = $id AND vessel_id = $vessel',
@@ -189,6 +222,7 @@ export async function signOff(
 /** Signs somebody back on. Roles that ended are given anew by the captain. */
 export async function signBackOn(change: Change, id: string): Promise<CrewView> {
   const { services, tx, vesselId, now } = change;
+  await lockLog(services, tx, vesselId);
   const member = await readMember(change, id);
   if (!member.signed_off_at) throw new AppError('conflict', `${member.name} is aboard already.`);
   await refuseSameMail(change, member.email, id);

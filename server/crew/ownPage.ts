@@ -23,9 +23,10 @@ export async function readOwnPage({
      FROM networks n
      LEFT JOIN passphrases x ON x.network_id = n.id AND x.live_at IS NOT NULL AND x.retired_at IS NULL
      LEFT JOIN rotations r ON r.network_id = n.id AND r.state IN ('planned','staged','handed_out','applying','unknown','needs_somebody')
-     LEFT JOIN holders h ON h.passphrase_id = x.id AND h.holder_kind = $kind AND h.holder_id = $holder
+     LEFT JOIN LATERAL (SELECT min(since) AS since FROM holders WHERE passphrase_id = x.id
+       AND ((holder_kind = $kind AND holder_id = $holder) OR (holder_kind = 'person' AND holder_id = $person))) h ON true
      WHERE n.vessel_id = $vessel AND n.audience = 'crew' AND n.removed_at IS NULL ORDER BY n.ssid`,
-    { vessel: vesselId, kind: holder.kind, holder: holder.id },
+    { vessel: vesselId, kind: holder.kind, holder: holder.id, person: actor.personId },
   );
   return {
     networks: rows.map((row) => ({
@@ -42,9 +43,6 @@ export async function readOwnPage({
 export async function readOwnCode(asked: Asked) {
   const { services, tx, vesselId, networkId } = asked;
   const network = await networkFacts(services, tx, vesselId, networkId);
-  const crew = await services.db.row(tx, "SELECT 1 FROM networks WHERE id = $id AND audience = 'crew'", {
-    id: networkId,
-  });
-  if (!crew) throw forbidden();
+  if (network.audience !== 'crew') throw forbidden();
   return ownCode(asked, network);
 }

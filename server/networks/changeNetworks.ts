@@ -5,6 +5,8 @@ import type { Audience } from '../../shared/rules/permissions.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, invalid, notFound } from '../errors.ts';
 import { appendLog, type LogEvent } from '../handovers/appendLog.ts';
+import { voidCards } from '../rotations/comeIntoForce.ts';
+import { lockLog, lockNetwork } from '../rotations/lockRotation.ts';
 import { replanNetwork } from '../rotations/replan.ts';
 import type { Services } from '../services.ts';
 
@@ -53,7 +55,7 @@ const STARTING: Record<Audience, Policy> = {
   },
 };
 
-const log = (
+export const log = (
   { services, tx, vesselId, actor, now }: Change,
   event: Pick<LogEvent, 'kind' | 'networkId' | 'passphraseId' | 'body'>,
 ) =>
@@ -81,6 +83,7 @@ async function refuseSameName(
 /** Adds a network with the rules its audience starts with; it has no passphrase until one is typed in or made. */
 export async function addNetwork(change: Change, body: NetworkBody): Promise<string> {
   const { services, tx, vesselId, now } = change;
+  await lockLog(services, tx, vesselId);
   await refuseSameName(change, body.ssid, null);
   const counted = await services.db.row<{ count: number }>(
     tx,
@@ -139,32 +142,38 @@ async function refuseUnderWay(
     );
 }
 
-/** Corrects a network. Its name and its kind of security wait while a change is under way. */
-export async function changeNetwork(change: Change, networkId: string, body: NetworkBody): Promise<void> {
+const JOIN_AGAIN =
+  'Every device has to join again: the name is part of what a passphrase is turned into, so the same passphrase under a new name is a new key. Give the access points the new name now.';
+
+/**
+ * Corrects a network. Its name, audience and kind of security wait while a change is under way. Answers what has
+ * to be done aboard because of it. A new name makes every device join again, since the key is derived from the
+ * passphrase and the SSID (IEEE 802.11i-2004 H.4), and a card with the old name or without the mark of a hidden
+ * network no longer joins, so such cards are void.
+ */
+export async function changeNetwork(
+  change: Change,
+  networkId: string,
+  body: NetworkBody,
+): Promise<string | null> {
   const { services, tx, vesselId, now } = change;
-  const before = await services.db.row<{ ssid: string; audience: Audience; security: string }>(
+  await lockNetwork(services, tx, vesselId, networkId);
+  const before = await services.db.row<{
+    ssid: string;
+    audience: Audience;
+    security: string;
+    hidden: boolean;
+  }>(
     tx,
-    'SELECT ssid, audience, security FROM networks WHERE id = $network AND vessel_id = $vessel AND removed_at IS NULL FOR UPDATE',
+    'SELECT ssid, audience, security, hidden FROM networks WHERE id = $network AND vessel_id = $vessel',
     { network: networkId, vessel: vesselId },
   );
   if (!before) throw notFound();
   await refuseSameName(change, body.ssid, networkId);
-  const identity =
-    before.ssid !== body.ssid || before.security !== body.security || before.audience !== body.audience;
-  if (identity) await refuseUnderWay(change, networkId, 'change its name, audience or security');
-  if (before.audience !== body.audience) {
-    const live = await services.db.row(
-      tx,
-      'SELECT 1 FROM passphrases WHERE network_id = $network AND live_at IS NOT NULL AND retired_at IS NULL',
-      { network: networkId },
-    );
-    if (live)
-      throw invalid({
-        audience: [
-          'People of the audience it has now hold its passphrase. Add another network for the new audience instead',
-        ],
-      });
-  }
+  const renamed = before.ssid !== body.ssid;
+  if (renamed || before.security !== body.security || before.audience !== body.audience)
+    await refuseUnderWay(change, networkId, 'change its name, audience or security');
+  if (before.audience !== body.audience) await refuseNewAudience(change, networkId);
   await services.db.run(
     tx,
     `UPDATE networks SET ssid = $ssid, audience = $audience, security = $security, hidden = $hidden, carries_equipment = $carriesEquipment,
@@ -176,30 +185,67 @@ export async function changeNetwork(change: Change, networkId: string, body: Net
     networkId,
     body: { ssid: body.ssid, security: body.security, carriesEquipment: body.carriesEquipment },
   });
+  const cards = renamed || (body.hidden && !before.hidden) ? await voidAllCards(change, networkId) : 0;
   await replanNetwork(services, tx, networkId, now);
+  const notice = [
+    ...(renamed ? [JOIN_AGAIN] : []),
+    ...(cards > 0
+      ? [
+          `${cards === 1 ? 'One card is' : `${cards} cards are`} void; print new ones before you hand out more.`,
+        ]
+      : []),
+  ];
+  return notice.length > 0 ? notice.join(' ') : null;
 }
 
-/** Takes a network away. Its planned change is cancelled; its passphrase, cards and log stay as history. */
-export async function removeNetwork(change: Change, networkId: string): Promise<void> {
-  const { services, tx, vesselId, now } = change;
-  await refuseUnderWay(change, networkId, 'remove it');
-  const bind = { network: networkId, vessel: vesselId, now };
-  const removed = await services.db.run(
+/** A passphrase was made for one audience; letting the network change sides would show it to another. */
+async function refuseNewAudience({ services, tx, vesselId }: Change, networkId: string): Promise<void> {
+  const kept = await services.db.row(
     tx,
-    'UPDATE networks SET removed_at = $now, updated_at = $now WHERE id = $network AND vessel_id = $vessel AND removed_at IS NULL RETURNING 1',
-    bind,
+    'SELECT 1 FROM passphrases WHERE network_id = $network AND vessel_id = $vessel AND retired_at IS NULL LIMIT 1',
+    { network: networkId, vessel: vesselId },
   );
-  if (removed.length === 0) throw notFound();
-  await services.db.run(
+  if (kept)
+    throw invalid({
+      audience: [
+        'Its passphrase was made for the audience it has now. Add another network for the new audience instead',
+      ],
+    });
+}
+
+async function voidAllCards(change: Change, networkId: string): Promise<number> {
+  const { services, tx, vesselId, actor, now } = change;
+  const kept = await services.db.rows<{ id: string }>(
     tx,
-    `UPDATE rotations SET state = 'cancelled', ended_at = $now, updated_at = $now WHERE network_id = $network AND vessel_id = $vessel AND state IN ('planned','staged')`,
-    bind,
+    'SELECT id FROM passphrases WHERE network_id = $network AND vessel_id = $vessel AND retired_at IS NULL',
+    { network: networkId, vessel: vesselId },
   );
-  await log(change, { kind: 'network.removed', networkId });
+  const cards = await voidCards(
+    services,
+    tx,
+    kept.map(({ id }) => id),
+    now,
+  );
+  await appendLog(
+    services,
+    tx,
+    cards.map((card) => ({
+      vesselId,
+      kind: 'card.void' as const,
+      at: now,
+      networkId,
+      passphraseId: card.passphraseId,
+      subject: { kind: 'card' as const, id: card.id },
+      actor: { id: actor.personId, name: actor.name },
+      body: { serial: card.serial },
+    })),
+  );
+  return cards.length;
 }
 
 /** Sets the network's rules and looks at its plan again. */
 export async function changePolicy(change: Change, networkId: string, policy: Policy): Promise<void> {
+  await lockNetwork(change.services, change.tx, change.vesselId, networkId);
   await writePolicy(change, networkId, policy);
   await log(change, {
     kind: 'policy.changed',
@@ -212,47 +258,4 @@ export async function changePolicy(change: Change, networkId: string, policy: Po
     },
   });
   await replanNetwork(change.services, change.tx, networkId, change.now);
-}
-
-/** Writes down that the passphrase in force leaked: the network is exposed, and its change moves up. */
-export async function reportLeak(change: Change, networkId: string, note: string | undefined): Promise<void> {
-  const { services, tx, vesselId, actor, now } = change;
-  const live = await services.db.row<{ id: string }>(
-    tx,
-    'SELECT id FROM passphrases WHERE network_id = $network AND vessel_id = $vessel AND live_at IS NOT NULL AND retired_at IS NULL',
-    { network: networkId, vessel: vesselId },
-  );
-  if (!live)
-    throw new AppError(
-      'not_now',
-      'No passphrase in force is on record for this network, so there is nothing that could leak.',
-    );
-  await services.db.run(
-    tx,
-    `INSERT INTO leaks(id, vessel_id, network_id, passphrase_id, kind, note, at, by_person) VALUES ($id, $vessel, $network, $passphrase, 'reported', $note, $now, $by)`,
-    {
-      id: randomUUID(),
-      vessel: vesselId,
-      network: networkId,
-      passphrase: live.id,
-      note: note ?? null,
-      now,
-      by: actor.personId,
-    },
-  );
-  await log(change, { kind: 'leak.reported', networkId, passphraseId: live.id });
-  await replanNetwork(services, tx, networkId, now);
-}
-
-/** Takes back a report that was a mistake. A lost card is taken back where the card was marked. */
-export async function withdrawLeak(change: Change, networkId: string, leakId: string): Promise<void> {
-  const { services, tx, vesselId, now } = change;
-  const [withdrawn] = await services.db.run<{ passphrase_id: string }>(
-    tx,
-    `UPDATE leaks SET withdrawn_at = $now WHERE id = $id AND network_id = $network AND vessel_id = $vessel AND kind = 'reported' AND withdrawn_at IS NULL RETURNING passphrase_id`,
-    { id: leakId, network: networkId, vessel: vesselId, now },
-  );
-  if (!withdrawn) throw notFound();
-  await log(change, { kind: 'leak.withdrawn', networkId, passphraseId: withdrawn.passphrase_id });
-  await replanNetwork(services, tx, networkId, now);
 }

@@ -49,11 +49,13 @@ interface LeakRow {
   kind: 'lost_card' | 'reported';
   at: Date;
   note: string | null;
+  by_person: string | null;
   serial: string | null;
 }
 
 export interface Asking {
   readonly vesselId: string;
+  readonly personId: string;
   readonly roles: readonly VesselRole[];
   readonly now: Date;
 }
@@ -86,7 +88,7 @@ export async function readNetworks(
   );
   const leaks = await db.rows<LeakRow>(
     tx,
-    `SELECT l.id, l.network_id, l.kind, l.at, l.note, c.serial FROM leaks l
+    `SELECT l.id, l.network_id, l.kind, l.at, l.note, l.by_person, c.serial FROM leaks l
      JOIN passphrases x ON x.id = l.passphrase_id AND x.live_at IS NOT NULL AND x.retired_at IS NULL
      LEFT JOIN cards c ON c.id = l.card_id
      WHERE l.vessel_id = $vessel AND ($network::uuid IS NULL OR l.network_id = $network::uuid) AND l.withdrawn_at IS NULL ORDER BY l.at DESC`,
@@ -94,13 +96,14 @@ export async function readNetworks(
   );
   const changes = await db.rows<SummaryRow>(
     tx,
-    `${SUMMARY} WHERE r.vessel_id = $vessel AND ($network::uuid IS NULL OR r.network_id = $network::uuid) AND r.state = ANY($open::text[])`,
-    { ...bind, open: [...OPEN_STATES] },
+    `${SUMMARY} WHERE r.vessel_id = $vessel AND ($network::uuid IS NULL OR r.network_id = $network::uuid) AND r.state = ANY($shown::text[])`,
+    { ...bind, shown: [...OPEN_STATES, 'drifted'] },
   );
   return rows.map((row) =>
     present(row, asking, {
       leaks: leaks.filter((leak) => leak.network_id === row.id),
-      change: changes.find((change) => change.network_id === row.id) ?? null,
+      change: changes.find((one) => one.network_id === row.id && one.state !== 'drifted') ?? null,
+      drift: changes.find((one) => one.network_id === row.id && one.state === 'drifted') ?? null,
     }),
   );
 }
@@ -134,8 +137,8 @@ function liveOf(row: NetworkRow, now: Date): NetworkView['live'] {
 
 function present(
   row: NetworkRow,
-  { roles, now }: Asking,
-  parts: { leaks: readonly LeakRow[]; change: SummaryRow | null },
+  { roles, personId, now }: Asking,
+  parts: { leaks: readonly LeakRow[]; change: SummaryRow | null; drift: SummaryRow | null },
 ): NetworkView {
   const live = liveOf(row, now);
   return {
@@ -155,14 +158,16 @@ function present(
       leaks: parts.leaks.length,
     }),
     holders: { current: row.current, departed: row.departed },
-    leaks: parts.leaks.map(({ id, kind, at, note, serial }) => ({
+    leaks: parts.leaks.map(({ id, kind, at, note, by_person, serial }) => ({
       id,
       kind,
       at: at.toISOString(),
-      note,
+      // A note may name a guest, so it is for those who may see guests and whoever wrote it.
+      note: may(roles, 'arrivals.view') || by_person === personId ? note : null,
       serial,
     })),
     change: parts.change ? presentSummary(parts.change) : null,
+    drift: parts.drift ? presentSummary(parts.drift) : null,
     may: {
       plan: may(roles, planAction(row.audience)),
       reveal: may(roles, revealAction(row.audience)),
@@ -197,7 +202,7 @@ export async function readNetworkDetail(
   const named = {
     guest: may(asking.roles, 'arrivals.view'),
     crew: may(asking.roles, 'crew.view'),
-    person: true,
+    person: may(asking.roles, 'crew.view'),
   };
   const history = await services.db.rows<{
     generation: number;

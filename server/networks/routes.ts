@@ -1,21 +1,14 @@
 import * as api from '../../shared/api/networks.ts';
-import { notFound } from '../errors.ts';
 import { endpoint } from '../http/endpoint.ts';
 import { crossingUntil } from '../rotations/handOut.ts';
-import {
-  addNetwork,
-  type Change,
-  changeNetwork,
-  changePolicy,
-  removeNetwork,
-  reportLeak,
-  withdrawLeak,
-} from './changeNetworks.ts';
+import { addNetwork, type Change, changeNetwork, changePolicy } from './changeNetworks.ts';
+import { reportLeak, withdrawLeak } from './leaks.ts';
 import { type Asking, readNetwork, readNetworkDetail, readNetworks } from './readNetworks.ts';
+import { removeNetwork } from './removeNetwork.ts';
 
 type Wide = Omit<Change, 'vesselId'> & {
   readonly params: { readonly vesselId: string };
-  readonly actor: { readonly roles: Asking['roles'] };
+  readonly actor: { readonly personId: string; readonly roles: Asking['roles'] };
 };
 const changeOf = ({ services, tx, actor, params, now }: Wide): Change => ({
   services,
@@ -26,22 +19,14 @@ const changeOf = ({ services, tx, actor, params, now }: Wide): Change => ({
 });
 const askingOf = ({ actor, params, now }: Wide): Asking => ({
   vesselId: params.vesselId,
+  personId: actor.personId,
   roles: actor.roles,
   now,
 });
 
-/** Does a verb about one network of the vessel, then shows the network as it is now. */
-async function andShow(context: Wide, networkId: string, verb: (change: Change) => Promise<void>) {
-  const { services, tx, params } = context;
-  const known = await services.db.row(
-    tx,
-    'SELECT 1 FROM networks WHERE id = $network AND vessel_id = $vessel AND removed_at IS NULL',
-    { network: networkId, vessel: params.vesselId },
-  );
-  if (!known) throw notFound();
-  await verb(changeOf(context));
-  return readNetwork(services, tx, askingOf(context), networkId);
-}
+/** Shows the network as it is now, after a verb about it. */
+const shown = ({ services, tx, params, ...context }: Wide & { params: { networkId: string } }) =>
+  readNetwork(services, tx, askingOf({ services, tx, params, ...context }), params.networkId);
 
 export const networkRoutes = [
   endpoint(api.listNetworks, {
@@ -67,10 +52,10 @@ export const networkRoutes = [
       ),
   }),
   endpoint(api.changeNetwork, {
-    handle: (context) =>
-      andShow(context, context.params.networkId, (change) =>
-        changeNetwork(change, context.params.networkId, context.body),
-      ),
+    handle: async (context) => {
+      const notice = await changeNetwork(changeOf(context), context.params.networkId, context.body);
+      return { ...(await shown(context)), notice };
+    },
   }),
   endpoint(api.removeNetwork, {
     handle: async (context) => {
@@ -79,21 +64,21 @@ export const networkRoutes = [
     },
   }),
   endpoint(api.changePolicy, {
-    handle: (context) =>
-      andShow(context, context.params.networkId, (change) =>
-        changePolicy(change, context.params.networkId, context.body),
-      ),
+    handle: async (context) => {
+      await changePolicy(changeOf(context), context.params.networkId, context.body);
+      return shown(context);
+    },
   }),
   endpoint(api.reportLeak, {
-    handle: (context) =>
-      andShow(context, context.params.networkId, (change) =>
-        reportLeak(change, context.params.networkId, context.body.note),
-      ),
+    handle: async (context) => {
+      await reportLeak(changeOf(context), context.params.networkId, context.body.note);
+      return shown(context);
+    },
   }),
   endpoint(api.withdrawLeak, {
-    handle: (context) =>
-      andShow(context, context.params.networkId, (change) =>
-        withdrawLeak(change, context.params.networkId, context.params.leakId),
-      ),
+    handle: async (context) => {
+      await withdrawLeak(changeOf(context), context.params.networkId, context.params.leakId);
+      return shown(context);
+    },
   }),
 ];

@@ -1,6 +1,7 @@
 import { Temporal } from 'temporal-polyfill';
 import type { Security } from '../../shared/api/common.ts';
 import type { Revealed } from '../../shared/api/passphrases.ts';
+import type { Audience } from '../../shared/rules/permissions.ts';
 import { OPEN_STATES, type Rotation, toTry } from '../../shared/rules/rotation.ts';
 import { zoneAt } from '../../shared/rules/shipTime.ts';
 import { wifiPayload } from '../../shared/rules/wifi.ts';
@@ -13,6 +14,7 @@ import { openPassphrase } from './sealPassphrase.ts';
 export interface NetworkFacts {
   readonly id: string;
   readonly ssid: string;
+  readonly audience: Audience;
   readonly security: Security;
   readonly hidden: boolean;
 }
@@ -30,8 +32,10 @@ interface TicketRow {
   due_at: Date;
   takes_over: boolean;
   from_passphrase_id: string | null;
-  to_passphrase_id: string | null;
+  to_passphrase_id: string;
   handed_out_at: Date | null;
+  verified: number;
+  of: number;
 }
 
 /** The network's facts. Throws `not_found` for another vessel's or a removed one. */
@@ -43,7 +47,7 @@ export async function networkFacts(
 ): Promise<NetworkFacts> {
   const row = await services.db.row<NetworkFacts>(
     tx,
-    'SELECT id, ssid, security, hidden FROM networks WHERE id = $network AND vessel_id = $vessel AND removed_at IS NULL',
+    'SELECT id, ssid, audience, security, hidden FROM networks WHERE id = $network AND vessel_id = $vessel AND removed_at IS NULL',
     { network: networkId, vessel: vesselId },
   );
   if (!row) throw notFound();
@@ -53,7 +57,8 @@ export async function networkFacts(
 /**
  * Which passphrases may work now and in which order to try them (guard section 3.3): the one in force alone while
  * nothing is under way; both once a change has left for the boat, the new one first after its time; a staged one
- * last, only for those who prepare its cards. Never rounded to one while it is not known.
+ * last, only for those who prepare its cards; and the one before where an access point was seen to have moved away
+ * from the one in force. Never rounded to one while it is not known.
  */
 export async function passphrasesToTry(
   services: Services,
@@ -67,27 +72,51 @@ export async function passphrasesToTry(
     'SELECT id, live_at FROM passphrases WHERE network_id = $network AND vessel_id = $vessel AND live_at IS NOT NULL AND retired_at IS NULL',
     bind,
   );
-  const ticket = await db.row<TicketRow>(
+  const tickets = await db.rows<TicketRow>(
     tx,
-    `SELECT state, due_at, takes_over, from_passphrase_id, to_passphrase_id, handed_out_at FROM rotations
-     WHERE network_id = $network AND vessel_id = $vessel AND (state = ANY($open::text[]) OR state = 'drifted')
-     ORDER BY state = 'drifted' LIMIT 1`,
+    `SELECT r.state, r.due_at, r.takes_over, r.from_passphrase_id, r.to_passphrase_id, r.handed_out_at,
+       t.verified::int AS verified, t."of"::int AS "of"
+     FROM rotations r CROSS JOIN LATERAL (SELECT count(*) AS "of", count(*) FILTER (WHERE seen = 'new' AND evidence IN ('E1','E2')) AS verified
+       FROM rotation_targets WHERE rotation_id = r.id) t
+     WHERE r.network_id = $network AND r.vessel_id = $vessel AND r.to_passphrase_id IS NOT NULL
+       AND (r.state = ANY($open::text[]) OR r.state IN ('live','drifted'))`,
     { ...bind, open: [...OPEN_STATES] },
   );
+  const settled = tickets.find(({ state }) => state === 'live' || state === 'drifted');
+  const open = tickets.find((ticket) => ticket !== settled);
   const zones = await shipZones(services, tx, given.vesselId);
-  const inForce: ToShow[] = live
-    ? [{ passphraseId: live.id, role: 'in_force', words: 'In force', since: live.live_at }]
-    : [];
-  if (!ticket?.to_passphrase_id) return inForce;
-  if (ticket.state === 'staged' && !ticket.takes_over) {
-    const from = `From ${inShipTime(ticket.due_at, zoneAt(zones, ticket.due_at))}, not before`;
-    return [
-      ...inForce,
-      ...(given.withStaged
-        ? [{ passphraseId: ticket.to_passphrase_id, role: 'staged' as const, words: from, since: null }]
-        : []),
-    ];
+  const shown = open && hasLeft(open) ? bothOf(open, given.now) : inForce(live, settled);
+  if (open && !hasLeft(open) && given.withStaged) {
+    const from = `From ${inShipTime(open.due_at, zoneAt(zones, open.due_at))}, not before`;
+    shown.push({ passphraseId: open.to_passphrase_id, role: 'staged', words: from });
   }
+  const before = settled?.state === 'drifted' ? settled.from_passphrase_id : null;
+  if (before !== null && !shown.some(({ passphraseId }) => passphraseId === before)) {
+    shown.push({
+      passphraseId: before,
+      role: 'old',
+      words: 'If that does not work: the one before. An access point was seen to run something else',
+    });
+  }
+  const kept = await stillKept(services, tx, shown);
+  return kept.map((one) => ({ ...one, since: one.passphraseId === live?.id ? live.live_at : null }));
+}
+
+type Candidate = Omit<ToShow, 'since'>;
+
+/** Once a change has left for the boat, an access point may run either passphrase. */
+const hasLeft = ({ state, takes_over, handed_out_at }: TicketRow): boolean =>
+  takes_over || (state !== 'staged' && (state !== 'needs_somebody' || handed_out_at !== null));
+
+function inForce(live: { id: string } | null, settled: TicketRow | undefined): Candidate[] {
+  if (!live) return [];
+  const words = settled
+    ? `In force, confirmed on ${settled.verified} of ${settled.of} access points`
+    : 'In force';
+  return [{ passphraseId: live.id, role: 'in_force', words }];
+}
+
+function bothOf(ticket: TicketRow, now: Date): Candidate[] {
   const order = toTry(
     {
       ...EMPTY,
@@ -98,21 +127,37 @@ export async function passphrasesToTry(
       to: ticket.to_passphrase_id,
       handedOutAt: ticket.handed_out_at,
     },
-    given.now,
+    now,
   );
-  return order.flatMap((which, index): ToShow[] => {
-    const passphraseId = which === 'new' ? ticket.to_passphrase_id : ticket.from_passphrase_id;
+  const names = ticket.takes_over
+    ? { new: 'the one before, which is being put back', old: 'the one that was given up' }
+    : { new: 'the new one', old: 'the old one' };
+  const known = `${ticket.verified} of ${ticket.of} access points are confirmed on the new one`;
+  return order.flatMap((role, index): Candidate[] => {
+    const passphraseId = role === 'new' ? ticket.to_passphrase_id : ticket.from_passphrase_id;
     if (!passphraseId) return [];
-    const name = which === 'new' ? 'the new one' : 'the old one';
-    return [
-      {
-        passphraseId,
-        role: which,
-        words: index === 0 ? `Try this first: ${name}` : `If that does not work: ${name}`,
-        since: null,
-      },
-    ];
+    const unknown = ticket.state === 'unknown' ? 'We do not know yet. ' : '';
+    const words =
+      index === 0
+        ? `${unknown}Try this first: ${names[role]}. ${ticket.takes_over ? 'Each access point is being confirmed' : known}`
+        : `If that does not work: ${names[role]}`;
+    return [{ passphraseId, role, words }];
   });
+}
+
+/** Without those whose secret was forgotten after they were proven refused everywhere. */
+async function stillKept(
+  services: Services,
+  tx: Tx,
+  shown: readonly Candidate[],
+): Promise<readonly Candidate[]> {
+  const kept = await services.db.rows<{ passphrase_id: string }>(
+    tx,
+    'SELECT passphrase_id FROM passphrase_secrets WHERE passphrase_id = ANY($ids::uuid[]) AND sealed IS NOT NULL',
+    { ids: shown.map(({ passphraseId }) => passphraseId) },
+  );
+  const ids = new Set(kept.map(({ passphrase_id }) => passphrase_id));
+  return shown.filter(({ passphraseId }) => ids.has(passphraseId));
 }
 
 const EMPTY: Omit<Rotation, 'state' | 'dueAt' | 'takesOver' | 'from' | 'to' | 'handedOutAt'> = {

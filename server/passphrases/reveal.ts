@@ -1,10 +1,12 @@
 import type { Revealed } from '../../shared/api/passphrases.ts';
-import { type Audience, may, printAction } from '../../shared/rules/permissions.ts';
+import { may, printAction } from '../../shared/rules/permissions.ts';
 import type { Tx } from '../db/connection.ts';
 import { appendLog } from '../handovers/appendLog.ts';
 import { type HandoverChannel, type Holder, recordHandover } from '../handovers/recordHandover.ts';
 import type { Actor } from '../http/session.ts';
 import { requireFresh } from '../rotations/changeNow.ts';
+import { confirmWay } from '../rotations/confirmWay.ts';
+import { lockLog } from '../rotations/lockRotation.ts';
 import type { Services } from '../services.ts';
 import { type NetworkFacts, networkFacts, openCodes, passphrasesToTry, type ToShow } from './codesToTry.ts';
 
@@ -38,23 +40,32 @@ export async function holderOf(
  */
 export async function reveal(asked: Asked): Promise<Revealed> {
   const { services, tx, actor, vesselId, networkId, now } = asked;
+  await lockLog(services, tx, vesselId);
   const network = await networkFacts(services, tx, vesselId, networkId);
-  const audience =
-    (
-      await services.db.row<{ audience: Audience }>(tx, 'SELECT audience FROM networks WHERE id = $id', {
-        id: networkId,
-      })
-    )?.audience ?? 'owner';
-  if (audience === 'owner') requireFresh(asked);
-  const withStaged = may(actor.roles, printAction(audience));
+  if (network.audience === 'owner') requireFresh(asked);
+  const withStaged = may(actor.roles, printAction(network.audience));
   const shown = await passphrasesToTry(services, tx, { vesselId, networkId, withStaged, now });
   await writeDown(asked, shown, 'reveal');
+  await countAsWay(asked, shown);
   return openCodes(services, tx, network, shown);
+}
+
+/** An officer who has looked a coming passphrase up is one of the ways aboard to learn it (guard: D1). */
+async function countAsWay(
+  { services, tx, actor, vesselId, now }: Asked,
+  shown: readonly ToShow[],
+): Promise<void> {
+  const by = { now, actor: { id: actor.personId, name: actor.name } };
+  for (const { passphraseId, role } of shown) {
+    if (role === 'staged' || role === 'new')
+      await confirmWay(services, tx, vesselId, passphraseId, 'officer', by);
+  }
 }
 
 /** The crew network's code on the person's own page. */
 export async function ownCode(asked: Asked, network: NetworkFacts): Promise<Revealed> {
   const { services, tx, vesselId, networkId, now } = asked;
+  await lockLog(services, tx, vesselId);
   const shown = await passphrasesToTry(services, tx, { vesselId, networkId, withStaged: false, now });
   await writeDown(asked, shown, 'own_page');
   return openCodes(services, tx, network, shown);

@@ -2,7 +2,7 @@ import * as api from '../../shared/api/passphrases.ts';
 import { endpoint } from '../http/endpoint.ts';
 import { readNetwork } from '../networks/readNetworks.ts';
 import { type Asked, reveal } from './reveal.ts';
-import { judge, typeIn } from './typeIn.ts';
+import { judge, presentVerdict, typeIn } from './typeIn.ts';
 
 type Wide = Omit<Asked, 'vesselId' | 'networkId'> & {
   readonly params: { readonly vesselId: string; readonly networkId: string };
@@ -19,11 +19,7 @@ export const passphraseRoutes = [
   endpoint(api.checkTyped, {
     prepare: ({ services, params, body }) =>
       judge(services, params.vesselId, params.networkId, body.passphrase),
-    handle: async ({ prepared: { verdict } }) => ({
-      grade: verdict.grade,
-      words: verdict.words,
-      why: verdict.why,
-    }),
+    handle: async ({ prepared }) => presentVerdict(prepared),
   }),
   endpoint(api.typeIn, {
     prepare: ({ services, params, body }) =>
@@ -31,15 +27,14 @@ export const passphraseRoutes = [
     handle: async (context) => {
       const { services, tx, actor, params, now, prepared } = context;
       await typeIn(askedOf(context), context.body.passphrase, prepared);
-      const { grade, words, why } = prepared.verdict;
       return {
         network: await readNetwork(
           services,
           tx,
-          { vesselId: params.vesselId, roles: actor.roles, now },
+          { vesselId: params.vesselId, personId: actor.personId, roles: actor.roles, now },
           params.networkId,
         ),
-        verdict: { grade, words, why },
+        verdict: presentVerdict(prepared),
       };
     },
   }),

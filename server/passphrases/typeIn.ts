@@ -1,8 +1,11 @@
 import type { Security } from '../../shared/api/common.ts';
+import type { PassphraseVerdict } from '../../shared/api/passphrases.ts';
+import { passphraseCautions } from '../../shared/rules/passphrase.ts';
 import { type Verdict, verdict } from '../../shared/rules/strength.ts';
-import { AppError, notFound } from '../errors.ts';
+import { AppError, invalid, notFound } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
 import { recordHandover } from '../handovers/recordHandover.ts';
+import { lockNetwork } from '../rotations/lockRotation.ts';
 import { comeIntoForceByHand } from '../rotations/typedIn.ts';
 import type { Services } from '../services.ts';
 import { type Asked, holderOf } from './reveal.ts';
@@ -12,7 +15,16 @@ import { sealPassphrase } from './sealPassphrase.ts';
 export interface Judged {
   readonly bits: number;
   readonly verdict: Verdict;
+  readonly cautions: readonly string[];
 }
+
+/** What is said of a typed passphrase; never its bits or length. */
+export const presentVerdict = ({ verdict, cautions }: Judged): PassphraseVerdict => ({
+  grade: verdict.grade,
+  words: verdict.words,
+  why: verdict.why,
+  cautions: [...cautions],
+});
 
 interface Words {
   ssid: string;
@@ -23,6 +35,7 @@ interface Words {
   home_port: string | null;
   lying: string | null;
   crew: string[];
+  members: string[];
 }
 
 /** Scores a typed passphrase with the vessel's own words as what a stranger tries first. Runs before the transaction. */
@@ -36,7 +49,9 @@ export async function judge(
     services.db.row<Words>(
       tx,
       `SELECT n.ssid, n.security, p.age_limit_days, v.name, v.owner_name, v.home_port, v.lying,
-         ARRAY(SELECT c.name FROM crew_members c WHERE c.vessel_id = v.id AND c.signed_off_at IS NULL ORDER BY c.name LIMIT 30) AS crew
+         ARRAY(SELECT c.name FROM crew_members c WHERE c.vessel_id = v.id AND c.signed_off_at IS NULL ORDER BY c.name LIMIT 30) AS crew,
+         ARRAY(SELECT DISTINCT p.name FROM memberships m JOIN people p ON p.id = m.person_id
+           WHERE m.vessel_id = v.id AND m.ended_at IS NULL ORDER BY p.name LIMIT 30) AS members
        FROM networks n JOIN vessels v ON v.id = n.vessel_id JOIN policies p ON p.network_id = n.id
        WHERE n.id = $network AND n.vessel_id = $vessel AND n.removed_at IS NULL`,
       { network: networkId, vessel: vesselId },
@@ -52,11 +67,16 @@ export async function judge(
     'guest',
     'crew',
     'owner',
+    ...row.members,
     ...row.crew,
   ]);
   try {
     const { guesses, bits } = await scoreTyped(passphrase, words);
-    return { bits, verdict: verdict({ security: row.security, ageLimitDays: row.age_limit_days, guesses }) };
+    return {
+      bits,
+      verdict: verdict({ security: row.security, ageLimitDays: row.age_limit_days, guesses }),
+      cautions: passphraseCautions(passphrase),
+    };
   } catch (error) {
     if (error instanceof ScoreUnavailable)
       throw new AppError('unavailable', error.message, { retryAfter: 5, cause: error });
@@ -70,6 +90,8 @@ export async function judge(
  */
 export async function typeIn(asked: Asked, passphrase: string, judged: Judged): Promise<void> {
   const { services, tx, actor, vesselId, networkId, now } = asked;
+  await lockNetwork(services, tx, vesselId, networkId);
+  await refuseSame(asked, passphrase);
   const passphraseId = await sealPassphrase(services, tx, {
     vesselId,
     networkId,
@@ -93,4 +115,20 @@ export async function typeIn(asked: Asked, passphrase: string, judged: Judged): 
     byPerson: actor.personId,
     at: now,
   });
+}
+
+/** What is on record already needs no typing in; told apart from reuse, because nobody did anything wrong. */
+async function refuseSame({ services, tx, vesselId, networkId }: Asked, passphrase: string): Promise<void> {
+  const same = await services.db.row(
+    tx,
+    `SELECT 1 FROM passphrases x JOIN passphrase_secrets s ON s.passphrase_id = x.id
+     WHERE x.network_id = $network AND x.vessel_id = $vessel AND x.live_at IS NOT NULL AND x.retired_at IS NULL
+       AND s.fingerprint = $fingerprint`,
+    {
+      network: networkId,
+      vessel: vesselId,
+      fingerprint: services.vault.fingerprint(vesselId, passphrase),
+    },
+  );
+  if (same) throw invalid({ passphrase: ['This one is on record as in force already. Nothing was changed'] });
 }

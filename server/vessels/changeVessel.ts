@@ -11,6 +11,7 @@ import { shipInstant } from '../../shared/rules/shipTime.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, invalid, notFound } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
+import { lockLog } from '../rotations/lockRotation.ts';
 import { replanNetwork } from '../rotations/replan.ts';
 import type { Services } from '../services.ts';
 import { shipZones } from './readVessel.ts';
@@ -95,7 +96,7 @@ export async function addZone(change: Change, body: { zone: string; fromLocal: s
   const zones = await shipZones(services, tx, vesselId);
   if (zones.length >= ZONES_MAX)
     throw invalid({ zone: [`At most ${ZONES_MAX} changes of ship's time are kept; take old ones away`] });
-  const fromAt = shipInstant(zones, Temporal.PlainDateTime.from(body.fromLocal));
+  const fromAt = shipInstant(zones, localTime(body.fromLocal));
   if (zones.some((span) => span.fromAt.getTime() === fromAt.getTime())) {
     throw invalid({ fromLocal: ["Ship's time already changes at that moment. Take that change away first"] });
   }
@@ -113,7 +114,19 @@ export async function addZone(change: Change, body: { zone: string; fromLocal: s
   await replanVessel(change);
 }
 
-function isZone(zone: string): boolean {
+/** The date and time as given; the schema has seen its form, not whether the calendar has such a day. */
+function localTime(text: string): Temporal.PlainDateTime {
+  try {
+    return Temporal.PlainDateTime.from(text);
+  } catch (cause) {
+    if (cause instanceof RangeError)
+      throw invalid({ fromLocal: ['There is no such date or time. Choose one from the calendar'] });
+    throw cause;
+  }
+}
+
+/** Whether the zone is a name of the IANA list, and not an offset such as +02:00. */
+export function isZone(zone: string): boolean {
   try {
     new Intl.DateTimeFormat('en', { timeZone: zone });
     return /^[A-Za-z]/.test(zone);
@@ -184,6 +197,7 @@ export async function setCabins(change: Change, cabins: CabinList): Promise<void
 export async function setAccessPoints(change: Change, accessPoints: AccessPointList): Promise<void> {
   refuseTwice('accessPoints', accessPoints);
   const { services, tx, vesselId, now } = change;
+  await lockLog(services, tx, vesselId);
   await keepOnly(change, 'access_points', accessPoints);
   await services.db.run(
     tx,
@@ -242,13 +256,13 @@ async function keepOnly(
     tx,
     `SELECT a.name FROM access_points a JOIN rotation_targets t ON t.access_point_id = a.id JOIN rotations r ON r.id = t.rotation_id
      WHERE a.vessel_id = $vessel AND a.removed_at IS NULL AND NOT a.id = ANY($kept::uuid[])
-       AND r.state IN ('handed_out','applying','unknown','needs_somebody','reconciling') LIMIT 1`,
+       AND r.state IN ('staged','handed_out','applying','unknown','needs_somebody','reconciling') LIMIT 1`,
     bind,
   );
   if (waiting)
     throw new AppError(
       'not_now',
-      `A change is under way on “${waiting.name}”. Finish or give up that change before taking it away.`,
+      `A change is ready for “${waiting.name}” or under way on it. Finish, cancel or give up that change before taking it away.`,
     );
   await services.db.run(
     tx,

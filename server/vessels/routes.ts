@@ -1,5 +1,6 @@
 import * as api from '../../shared/api/vessels.ts';
 import { endpoint } from '../http/endpoint.ts';
+import { addVessel } from './addVessel.ts';
 import {
   addZone,
   changeSource,
@@ -20,6 +21,7 @@ const changeOf = ({ services, tx, actor, params, now }: Omit<Wide, 'vesselId'>) 
 });
 
 export const vesselRoutes = [
+  endpoint(api.addVessel, { handle: (context) => addVessel(context, context.body) }),
   endpoint(api.readVessel, {
     handle: ({ services, tx, actor, params, now }) =>
       readVessel(services, tx, { vesselId: params.vesselId, roles: actor.roles, now }),

@@ -102,6 +102,8 @@ export const networkView = z.strictObject({
   ),
   /** The change that is planned, staged or under way. */
   change: rotationSummary.nullable(),
+  /** The last change, where an access point was seen to run something else since. */
+  drift: rotationSummary.nullable(),
   /** What the person asking may do here. */
   may: z.strictObject({
     plan: z.boolean(),
@@ -181,7 +183,8 @@ export const changeNetwork = contract({
   access: vessel('networks.edit'),
   params: networkParams,
   body: networkBody,
-  response: networkView,
+  /** `notice`: what has to be done aboard because of it, as a sentence. */
+  response: networkView.extend({ notice: z.string().nullable() }),
 });
 
 export const removeNetwork = contract({

@@ -18,7 +18,11 @@ export const passphraseVerdict = z.strictObject({
   /** "about 3 hours for someone who recorded one phone joining" */
   words: z.string(),
   why: z.string(),
+  /** What may trip some phones when they read it from a code, each a sentence. */
+  cautions: z.array(z.string()),
 });
+
+export type PassphraseVerdict = z.infer<typeof passphraseVerdict>;
 
 export const checkTyped = contract({
   name: 'passphrases.check',

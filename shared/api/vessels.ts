@@ -9,8 +9,9 @@ import {
   RETENTION_DAYS_MAX,
   RETENTION_DAYS_MIN,
 } from '../rules/limits.ts';
+import { email } from './auth.ts';
 import { audience, driver, id, instant, nameText, source, vesselParams, vesselRole } from './common.ts';
-import { contract, vessel } from './contract.ts';
+import { contract, dealer, vessel } from './contract.ts';
 
 const optionalText = (max: number) =>
   z
@@ -86,7 +87,7 @@ export const vesselBody = z.strictObject({
   kind: nameText(60),
   lengthM: z
     .number('Give the length in metres')
-    .positive('Give the length in metres')
+    .min(1, 'Give the length in metres')
     .max(400, 'Give the length in metres')
     .nullable(),
   guestsMax: z.number('Give a whole number').int('Give a whole number').min(0).max(500).nullable(),
@@ -192,4 +193,27 @@ export const setAccessPoints = contract({
       .max(ACCESS_POINTS_MAX),
   }),
   response: vesselSettings,
+});
+
+/** What a dealer says of a vessel it begins to look after; the rest is for her captain to fill in. */
+export const newVesselBody = z.strictObject({
+  name: nameText(NAME_MAX),
+  kind: nameText(60),
+  homePort: optionalText(NAME_MAX),
+  /** Ship's time as an IANA name. */
+  zone: z.string().min(1, "Choose the zone of ship's time").max(64),
+  captain: z.strictObject({ name: nameText(NAME_MAX), email }),
+});
+export type NewVesselBody = z.input<typeof newVesselBody>;
+
+export const addVessel = contract({
+  name: 'vessels.add',
+  method: 'POST',
+  path: '/fleet/vessels',
+  summary: 'Add a vessel to the fleet and invite her captain by mail',
+  access: dealer('fleet.addVessel'),
+  fresh: true,
+  body: newVesselBody,
+  response: z.strictObject({ vesselId: id, name: z.string(), invited: z.string() }),
+  status: 201,
 });

@@ -45,6 +45,7 @@ export const LOG_KINDS = {
   'network.removed': 'Network removed',
   'access_point.changed': 'Access points changed',
   'policy.changed': 'Policy changed',
+  'vessel.added': 'Vessel added',
   'vessel.changed': 'Vessel changed',
   'role.given': 'Role given',
   'role.ended': 'Role ended',
