@@ -1,4 +1,5 @@
 import { authRoutes } from './auth/routes.ts';
+import { cardRoutes } from './cards/routes.ts';
 import { crewRoutes } from './crew/routes.ts';
 import { fleetRoutes } from './fleet/routes.ts';
 import type { Endpoint } from './http/endpoint.ts';
@@ -16,4 +17,5 @@ export const endpoints: readonly Endpoint[] = [
   ...networkRoutes,
   ...passphraseRoutes,
   ...crewRoutes,
+  ...cardRoutes,
 ];

@@ -5,6 +5,7 @@ import {
   cardLanguage,
   id,
   instant,
+  language,
   pageQuery,
   security,
   vesselParams,
@@ -95,7 +96,8 @@ export const showCode = contract({
   response: shownCode,
 });
 
-const PRINT_MAX = 500;
+/** Cards of one print. */
+export const PRINT_MAX = 500;
 
 export const printBody = z
   .strictObject({
@@ -112,7 +114,7 @@ export const printBody = z
     /** For all of them; each person's own unless said, English for blanks. */
     language: cardLanguage.optional(),
     which: whichPassphrase.optional(),
-    /** Leaves earlier cards of these people good; otherwise they are void. */
+    /** Leaves earlier cards printed for these people and not handed over good; otherwise they are void. */
     keepEarlier: z.boolean().default(false),
   })
   .refine(
@@ -135,6 +137,24 @@ export const printCards = contract({
   secret: true,
   params: networkParams,
   body: printBody,
+  response: 'pdf',
+});
+
+/** The same card again for the same person, in the same format and language, with a new serial. */
+export const reprintCard = contract({
+  name: 'cards.reprint',
+  method: 'POST',
+  path: '/vessels/:vesselId/cards/:cardId/reprint',
+  summary:
+    'Print a card again; the earlier one is void unless told otherwise; gone once its passphrase is retired',
+  access: whoMayPrint,
+  secret: true,
+  params: vesselParams.extend({ cardId: id }),
+  body: z.strictObject({
+    format: cardFormat.optional(),
+    /** Leaves the earlier card good. */
+    keepEarlier: z.boolean().default(false),
+  }),
   response: 'pdf',
 });
 
