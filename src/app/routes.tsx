@@ -4,7 +4,23 @@ import { Root } from './Root.tsx';
 import { NotFound, RouteError } from './RouteError.tsx';
 import { firstPlaceLoader, sessionLoader, vesselFirstPlaceLoader } from './session.ts';
 
-const vesselPages: RouteObject[] = [{ index: true, loader: vesselFirstPlaceLoader, Component: FirstLoad }];
+const vesselPages: RouteObject[] = [
+  { index: true, loader: vesselFirstPlaceLoader, Component: FirstLoad },
+  {
+    path: 'arrivals',
+    lazy: async () => {
+      const { ArrivalsPage, arrivalsLoader } = await import('../pages/ArrivalsPage.tsx');
+      return { Component: ArrivalsPage, loader: arrivalsLoader };
+    },
+  },
+  {
+    path: 'arrivals/import',
+    lazy: async () => {
+      const { ImportPage, importLoader } = await import('../pages/ImportPage.tsx');
+      return { Component: ImportPage, loader: importLoader };
+    },
+  },
+];
 
 const fleetPages: RouteObject[] = [
   {

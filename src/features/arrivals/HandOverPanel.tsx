@@ -1,0 +1,207 @@
+import { useMutation, useQueryClient } from '@tanstack/react-query';
+import { useCallback, useEffect, useState } from 'react';
+import type { ArrivalsView, GuestView } from '../../../shared/api/arrivals.ts';
+import type { CardLanguage } from '../../../shared/api/common.ts';
+import { CARD_LANGUAGES, CARD_MESSAGES } from '../../../shared/messages/card.ts';
+import { Button } from '../../components/Button.tsx';
+import { Caution } from '../../components/Caution.tsx';
+import { DateTime } from '../../components/DateTime.tsx';
+import { useNotices } from '../../components/Notices.tsx';
+import { SafeText } from '../../components/SafeText.tsx';
+import { Segmented } from '../../components/Segmented.tsx';
+import { sentenceFor } from '../../lib/errors.ts';
+import { useSecret } from '../../lib/useSecret.ts';
+import { CardFace } from './CardFace.tsx';
+import { GuestActions } from './GuestActions.tsx';
+import { cardLanguageOf, guestCalled } from './guestWords.ts';
+import { LargeCode } from './LargeCode.tsx';
+import { arrivalsKey, handOver, previewCard, printCards, undoHandover } from './queries.ts';
+
+interface HandOverPanelProps {
+  vesselId: string;
+  arrivals: ArrivalsView;
+  guest: GuestView;
+  /** After a handover: the next guest is chosen. */
+  onServed: (guestId: string) => void;
+  /** After an undo: back to whom it was about. */
+  onSelect: (guestId: string) => void;
+}
+
+/** How long a code shown large stays before it hides itself, in seconds: enough for two phones. */
+const LARGE_SECONDS = 60;
+
+/** The guest chosen: their card, and the ways to give it to them. One press hands over; undo for ten seconds. */
+export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }: HandOverPanelProps) {
+  const client = useQueryClient();
+  const { say, undoable } = useNotices();
+  const [language, setLanguage] = useState<CardLanguage>(cardLanguageOf(guest.language));
+  const [large, setLarge] = useState(false);
+  const network = arrivals.network;
+  const networkId = network?.id ?? '';
+  const refresh = () => client.invalidateQueries({ queryKey: arrivalsKey(vesselId) });
+  const fetchCard = useCallback(
+    () => previewCard(vesselId, networkId, { guestId: guest.id, language }),
+    [vesselId, networkId, guest.id, language],
+  );
+  const peek = useSecret(fetchCard);
+  const { hide: hidePeek } = peek;
+  // biome-ignore lint/correctness/useExhaustiveDependencies: another language makes what is shown stale
+  useEffect(() => hidePeek(), [language, hidePeek]);
+  const code = useSecret(fetchCard, LARGE_SECONDS);
+
+  const give = useMutation({
+    mutationFn: (channel: 'card' | 'screen') =>
+      handOver(vesselId, {
+        guestId: guest.id,
+        networkId,
+        channel,
+        cardId: channel === 'card' ? (guest.printedCard?.id ?? null) : null,
+      }),
+    onSuccess: async (answer, channel) => {
+      await refresh();
+      if (answer.already) say(answer.sentence);
+      else undoable(answer.sentence, () => undo.mutate(answer.handoverId));
+      if (channel === 'card') onServed(guest.id);
+    },
+  });
+  const undo = useMutation({
+    mutationFn: (handoverId: string) => undoHandover(vesselId, handoverId),
+    onSuccess: async () => {
+      await refresh();
+      onSelect(guest.id);
+      say(`Taken back: ${guestCalled(guest)} has not been given the password.`);
+    },
+    onError: (error) => say(sentenceFor(error)),
+  });
+  const print = useMutation({
+    mutationFn: () =>
+      printCards(vesselId, networkId, {
+        guestIds: [guest.id],
+        format: 'wallet',
+        language,
+        keepEarlier: false,
+      }),
+    onSuccess: async () => {
+      await refresh();
+      say('The card is a PDF among your downloads. Print it at actual size.');
+    },
+  });
+  const showLarge = async () => {
+    await give.mutateAsync('screen');
+    setLarge(true);
+    await code.show();
+  };
+  const closeLarge = () => {
+    setLarge(false);
+    code.hide();
+    onServed(guest.id);
+  };
+
+  if (!network) {
+    return (
+      <p className="text-soft">
+        No guest network has been entered yet. The ETO or captain adds it under Networks.
+      </p>
+    );
+  }
+  const failed = give.error ?? print.error ?? (code.stage.kind === 'failed' ? code.stage.error : null);
+  const nothing = !network.live && !network.staged;
+  return (
+    <div className="flex h-full flex-col gap-4">
+      <div>
+        <p className="text-sm text-soft">Join card for</p>
+        <h2 className="text-xl">
+          <SafeText>{guestCalled(guest)}</SafeText>
+        </h2>
+      </div>
+      <CardFace
+        language={language}
+        ssid={network.ssid}
+        serial={guest.printedCard?.serial ?? null}
+        shown={peek.stage.kind === 'shown' ? peek.stage.value : null}
+        cover={
+          <button
+            type="button"
+            className="min-h-12 rounded-md px-2 text-sm font-medium underline underline-offset-4"
+            onClick={() => void peek.show()}
+            disabled={nothing}
+          >
+            {peek.stage.kind === 'fetching' ? 'Fetching…' : 'Look at the card'}
+          </button>
+        }
+      />
+      {peek.stage.kind === 'failed' ? (
+        <p role="alert" className="text-sm font-medium text-magenta">
+          {sentenceFor(peek.stage.error)}
+        </p>
+      ) : null}
+      <Segmented
+        label="Language of the card"
+        value={language}
+        onChange={setLanguage}
+        options={CARD_LANGUAGES.map((value) => ({
+          value,
+          label: value.toUpperCase(),
+          name: CARD_MESSAGES[value].languageName,
+        }))}
+      />
+      {network.staged ? (
+        <p className="text-sm">
+          A new password is in force from{' '}
+          <DateTime at={network.staged.from} zone={arrivals.zone} as="words" />. Who arrives later is given
+          that one.
+        </p>
+      ) : null}
+      {arrivals.dockCaution ? (
+        <Caution>
+          The boat is on the dock's shared network. Ask guests to hold off banking until we switch to cellular
+          or satellite.
+        </Caution>
+      ) : null}
+      {nothing ? (
+        <Caution>No password is on record for this network, so there is nothing to hand over yet.</Caution>
+      ) : null}
+      {guest.under16 ? (
+        <p className="text-sm text-soft">Under 16: hand the card to a parent, or ask one first.</p>
+      ) : null}
+      {failed ? (
+        <p role="alert" className="text-sm font-medium text-magenta">
+          {sentenceFor(failed)}
+        </p>
+      ) : null}
+      <div className="mt-auto flex flex-col gap-2.5">
+        {guest.ashoreAt ? null : (
+          <>
+            <Button
+              kind="primary"
+              size="large"
+              wide
+              disabled={nothing}
+              busy={give.isPending && 'Writing it down…'}
+              onClick={() => give.mutate('card')}
+            >
+              {guest.handover ? 'Hand over another card' : 'Hand over printed card'}
+            </Button>
+            <div className="grid grid-cols-2 gap-2.5">
+              <Button size="large" disabled={nothing} onClick={() => void showLarge().catch(() => undefined)}>
+                Show large code
+              </Button>
+              <Button
+                size="large"
+                disabled={nothing}
+                busy={print.isPending && 'Printing…'}
+                onClick={() => print.mutate()}
+              >
+                {guest.printedCard || guest.handover ? 'Print another' : 'Print a card'}
+              </Button>
+            </div>
+          </>
+        )}
+        <GuestActions vesselId={vesselId} arrivals={arrivals} guest={guest} />
+      </div>
+      {large && code.stage.kind === 'shown' ? (
+        <LargeCode code={code.stage.value} language={language} left={code.stage.left} onClose={closeLarge} />
+      ) : null}
+    </div>
+  );
+}

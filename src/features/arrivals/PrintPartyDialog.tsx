@@ -1,0 +1,90 @@
+import { useMutation, useQueryClient } from '@tanstack/react-query';
+import { useState } from 'react';
+import type { ArrivalsView } from '../../../shared/api/arrivals.ts';
+import type { CardFormat } from '../../../shared/api/common.ts';
+import { Button } from '../../components/Button.tsx';
+import { Dialog } from '../../components/Dialog.tsx';
+import { Checkbox, RadioRow } from '../../components/inputs.tsx';
+import { useNotices } from '../../components/Notices.tsx';
+import { sentenceFor } from '../../lib/errors.ts';
+import { arrivalsKey, printCards } from './queries.ts';
+
+const FORMATS: readonly { value: CardFormat; label: string; hint: string }[] = [
+  {
+    value: 'wallet-sheet',
+    label: 'Wallet cards, ten to an A4 sheet',
+    hint: 'With cut marks; backs on the next page, turned on the long edge.',
+  },
+  {
+    value: 'wallet',
+    label: 'Wallet cards, one a page',
+    hint: 'The size of a bank card, for a card printer.',
+  },
+  { value: 'cabin', label: 'Cabin cards', hint: 'A6, to stand in the cabin.' },
+];
+
+/** Prints cards for the whole party at once, each in its guest's language. */
+export function PrintPartyDialog({
+  vesselId,
+  arrivals,
+  onClose,
+}: {
+  vesselId: string;
+  arrivals: ArrivalsView;
+  onClose: () => void;
+}) {
+  const client = useQueryClient();
+  const { say } = useNotices();
+  const [format, setFormat] = useState<CardFormat>('wallet-sheet');
+  const [onlyMissing, setOnlyMissing] = useState(true);
+  const aboard = arrivals.guests.filter(({ ashoreAt }) => ashoreAt === null);
+  const missing = aboard.filter(({ printedCard, handover }) => !printedCard && !handover);
+  const chosen = onlyMissing ? missing : aboard;
+  const print = useMutation({
+    mutationFn: () =>
+      printCards(vesselId, arrivals.network?.id ?? '', {
+        guestIds: chosen.map(({ id }) => id),
+        format,
+        keepEarlier: false,
+      }),
+    onSuccess: async () => {
+      await client.invalidateQueries({ queryKey: arrivalsKey(vesselId) });
+      say('The cards are a PDF among your downloads. Print it at actual size.');
+      onClose();
+    },
+  });
+  return (
+    <Dialog
+      open
+      onClose={onClose}
+      title="Print cards for the party"
+      actions={
+        <Button
+          kind="primary"
+          size="large"
+          disabled={chosen.length === 0 || !arrivals.network}
+          busy={print.isPending && 'Printing…'}
+          onClick={() => print.mutate()}
+        >
+          {chosen.length === 1 ? 'Print 1 card' : `Print ${chosen.length} cards`}
+        </Button>
+      }
+    >
+      <RadioRow label="Format" name="format" value={format} options={FORMATS} onChange={setFormat} />
+      <Checkbox
+        label="Only for guests without a card"
+        hint={`${missing.length} of ${aboard.length} have none. A card printed again makes the earlier one void.`}
+        checked={onlyMissing}
+        onChange={(event) => setOnlyMissing(event.target.checked)}
+      />
+      <p className="text-sm text-soft">
+        Each card is in its guest's language, or in English where cards are not printed in it.
+      </p>
+      {print.error ? (
+        <p role="alert" className="text-sm font-medium text-magenta">
+          {sentenceFor(print.error)}
+        </p>
+      ) : null}
+    </Dialog>
+  );
+}
