@@ -20,6 +20,13 @@ const vesselPages: RouteObject[] = [
       return { Component: ImportPage, loader: importLoader };
     },
   },
+  {
+    path: 'crew',
+    lazy: async () => {
+      const { CrewPage, crewLoader } = await import('../pages/CrewPage.tsx');
+      return { Component: CrewPage, loader: crewLoader };
+    },
+  },
 ];
 
 const fleetPages: RouteObject[] = [
