@@ -168,7 +168,7 @@ export async function setRoles(services: Services, tx: Tx, given: RoleChange): P
     subject: { kind: 'person', id: given.personId, name: person?.name },
   } as const;
   const suspension = given.suspended !== wasSuspended && wanted.length > 0;
-  await appendLog(services, tx, [
+  const [entry] = await appendLog(services, tx, [
     ...(added.length > 0
       ? [{ ...about, kind: 'role.given' as const, body: { roles: added.join(',') } }]
       : []),
@@ -193,7 +193,7 @@ export async function setRoles(services: Services, tx: Tx, given: RoleChange): P
       kind: 'role_given',
       to: person.email,
       vesselId: given.vesselId,
-      messageKey: `role_given:${given.vesselId}:${given.personId}:${now.toISOString()}`,
+      messageKey: `role_given:${entry}`,
       data: {
         name: person.name,
         place: vessel?.name ?? 'your vessel',

@@ -185,6 +185,7 @@ async function rememberDevice(
   given: { person: PersonRow; label: string; now: Date; response: Response },
 ): Promise<void> {
   const { person, label, now } = given;
+  const id = randomUUID();
   const token = newToken();
   const before = await services.db.row(tx, 'SELECT 1 FROM known_devices WHERE person_id = $id LIMIT 1', {
     id: person.id,
@@ -192,14 +193,14 @@ async function rememberDevice(
   await services.db.run(
     tx,
     'INSERT INTO known_devices(id, person_id, token_hash, label, created_at, last_used_at) VALUES ($id, $person, $hash, $label, $now, $now)',
-    { id: randomUUID(), person: person.id, hash: sha256(token), label, now },
+    { id, person: person.id, hash: sha256(token), label, now },
   );
   setDeviceCookie(given.response, token);
   if (before) {
     await queueMail(services, tx, {
       kind: 'new_device',
       to: person.email,
-      messageKey: `new_device:${person.id}:${now.toISOString()}`,
+      messageKey: `new_device:${id}`,
       data: { name: person.name, device: label, at: now.toISOString() },
     });
   }
