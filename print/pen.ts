@@ -12,7 +12,6 @@ export const SOFT = rgb('52626D');
 export const RULE = rgb('CFCDC2');
 export const FLAG_BLUE = rgb('123E8C');
 export const FLAG_RED = rgb('B4232A');
-export const BLACK = rgb('000000');
 export const WHITE = rgb('FFFFFF');
 
 export interface Span {
