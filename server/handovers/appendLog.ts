@@ -86,7 +86,7 @@ function unwritable(services: Services, error: unknown): unknown {
   return new AppError(
     'unavailable',
     'The log cannot be written just now, so nothing was shown or changed. Tell whoever runs the server, then try again.',
-    { retryAfter: 30, cause: error },
+    { cause: error },
   );
 }
 

@@ -1,13 +1,21 @@
 import { schedule } from 'node-cron';
+import { sweepAccounts } from '../auth/sweepAccounts.ts';
+import { checkpointLogs } from '../handovers/checkpoint.ts';
 import { mailTransport, sweepMail } from '../mail/sendMail.ts';
 import { purgeRetired } from '../rotations/purge.ts';
 import { sweep } from '../rotations/sweep.ts';
 import type { Services } from '../services.ts';
+import { endVisits } from '../voyages/endVisits.ts';
+import { eraseGuests } from '../voyages/eraseGuests.ts';
 
 /** What happens on the clock, by name; each finds work and does it once even on several servers. */
 const TICKS: Record<string, { cron: string; run: (services: Services) => Promise<unknown> }> = {
   rotations: { cron: '*/15 * * * * *', run: sweep },
   mail: { cron: '*/30 * * * * *', run: (services) => sweepMail(services, mailTransport(services)) },
+  visits: { cron: '20 * * * * *', run: endVisits },
+  checkpoints: { cron: '3 * * * *', run: checkpointLogs },
+  retention: { cron: '17 * * * *', run: eraseGuests },
+  accounts: { cron: '23 * * * *', run: sweepAccounts },
   purge: { cron: '7 * * * *', run: purgeRetired },
 };
 

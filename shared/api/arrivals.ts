@@ -132,6 +132,8 @@ export const previewList = contract({
   path: '/vessels/:vesselId/arrivals/preview',
   summary: "Read a party's list without keeping anything of it",
   access: editing,
+  // Not for a passphrase: a list that is only looked at is not kept for repeats either.
+  secret: true,
   params: vesselParams,
   body: z
     .strictObject({
@@ -144,6 +146,9 @@ export const previewList = contract({
         .optional(),
       /** A person's answer where the list does not say which of day and month comes first. */
       dateOrder: dateOrder.optional(),
+      /** The party's times: its own days, given without a time of day, then mean these. */
+      arrivesAt: instant.optional(),
+      leavesAt: instant.optional(),
     })
     .refine((body) => (body.text === undefined) !== (body.base64 === undefined), {
       path: ['text'],
