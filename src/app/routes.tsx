@@ -27,6 +27,20 @@ const vesselPages: RouteObject[] = [
       return { Component: CrewPage, loader: crewLoader };
     },
   },
+  {
+    path: 'cards',
+    lazy: async () => {
+      const { CardsPage, cardsLoader } = await import('../pages/CardsPage.tsx');
+      return { Component: CardsPage, loader: cardsLoader };
+    },
+  },
+  {
+    path: 'log',
+    lazy: async () => {
+      const { LogPage, logLoader } = await import('../pages/LogPage.tsx');
+      return { Component: LogPage, loader: logLoader };
+    },
+  },
 ];
 
 const fleetPages: RouteObject[] = [
