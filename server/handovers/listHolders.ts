@@ -1,9 +1,9 @@
-import { type HoldersView, holderView } from '../../shared/api/handovers.ts';
-import type { Audience } from '../../shared/rules/permissions.ts';
+import { type HoldersView, type HolderView, holderView } from '../../shared/api/handovers.ts';
+import { type Audience, may, revealAction } from '../../shared/rules/permissions.ts';
 import { zoneAt } from '../../shared/rules/shipTime.ts';
 import type { Verb } from '../http/verb.ts';
 import { shipZones } from '../vessels/readVessel.ts';
-import { holdersOf } from './holders.ts';
+import { holdersOf, type LiveHolder } from './holders.ts';
 
 interface NetworkRow {
   id: string;
@@ -13,7 +13,10 @@ interface NetworkRow {
   leaks: { kind: 'lost_card' | 'reported'; at: string }[];
 }
 
-/** Who holds each network's passphrase in force, who of them has left, and what leaked. */
+/**
+ * Who holds each network's passphrase in force, who of them has left, and what leaked. Of the owner's network
+ * only those who may see its passphrase read the names.
+ */
 export async function listHolders({ services, tx, actor, now }: Verb): Promise<HoldersView> {
   const vesselId = actor.vesselId ?? '';
   const networks = await services.db.rows<NetworkRow>(
@@ -32,6 +35,7 @@ export async function listHolders({ services, tx, actor, now }: Verb): Promise<H
     tx,
     networks.map(({ id }) => id),
   );
+  const seesNames = (audience: Audience) => audience !== 'owner' || may(actor.roles, revealAction('owner'));
   return {
     zone: zoneAt(await shipZones(services, tx, vesselId), now),
     networks: networks.map((network) => {
@@ -41,18 +45,21 @@ export async function listHolders({ services, tx, actor, now }: Verb): Promise<H
         ssid: network.ssid,
         audience: network.audience,
         since: network.since?.toISOString() ?? null,
-        holders: mine.map((holder) => ({
-          kind: holder.kind,
-          id: holder.id,
-          name: holder.name,
-          label: holder.label,
-          since: holder.since.toISOString(),
-          through: holderView.shape.through.parse(holder.through),
-          departedAt: holder.departedAt?.toISOString() ?? null,
-        })),
+        holders: seesNames(network.audience) ? mine.map(present) : null,
+        current: mine.filter((holder) => holder.departedAt === null).length,
         departed: mine.filter((holder) => holder.departedAt !== null).length,
         leaks: network.leaks.map((leak) => ({ kind: leak.kind, at: new Date(leak.at).toISOString() })),
       };
     }),
   };
 }
+
+const present = (holder: LiveHolder): HolderView => ({
+  kind: holder.kind,
+  id: holder.id,
+  name: holder.name,
+  label: holder.label,
+  since: holder.since.toISOString(),
+  through: holderView.shape.through.parse(holder.through),
+  departedAt: holder.departedAt?.toISOString() ?? null,
+});

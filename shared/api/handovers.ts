@@ -75,8 +75,9 @@ export const holdersView = z.strictObject({
       audience,
       /** When the passphrase in force came into force; null where none is recorded. */
       since: instant.nullable(),
-      /** The departed first. */
-      holders: z.array(holderView),
+      /** The departed first; null where the person asking sees the count only: the owner's network. */
+      holders: z.array(holderView).nullable(),
+      current: z.number().int(),
       departed: z.number().int(),
       /** Lost cards and reported leaks of the passphrase in force. */
       leaks: z.array(z.strictObject({ kind: z.enum(['lost_card', 'reported']), at: instant })),

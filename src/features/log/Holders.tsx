@@ -13,6 +13,9 @@ const THROUGH: Record<HolderView['through'], string> = {
   typed: 'typed it in',
 };
 
+const counted = (people: number): string =>
+  people === 0 ? 'Nobody holds it. ' : people === 1 ? '1 person holds it. ' : `${people} people hold it. `;
+
 /** For each network: who knows the passphrase in force, the departed first. */
 export function Holders({ view }: { view: HoldersView }) {
   return (
@@ -30,11 +33,10 @@ export function Holders({ view }: { view: HoldersView }) {
             ) : (
               'No passphrase on record. '
             )}
-            {network.holders.length === 0
-              ? 'Nobody holds it.'
-              : network.holders.length === 1
-                ? '1 person holds it.'
-                : `${network.holders.length} people hold it.`}
+            {counted(network.current + network.departed)}
+            {network.holders === null && network.departed > 0 ? (
+              <Attention>{`${network.departed} of them left.`}</Attention>
+            ) : null}
           </p>
           {network.leaks.map(({ kind, at }) => (
             <p key={`${kind} ${at}`} className="text-sm">
@@ -43,7 +45,7 @@ export function Holders({ view }: { view: HoldersView }) {
             </p>
           ))}
           <ul className="m-0 list-none p-0 text-sm">
-            {network.holders.map((holder) => (
+            {network.holders?.map((holder) => (
               <li
                 key={`${holder.kind} ${holder.id}`}
                 className="flex flex-wrap justify-between gap-x-4 border-b border-rule py-1.5"

@@ -216,11 +216,12 @@ describe('the list of cards', () => {
     await print(captain, boat, { blanks: 2 }, 'crew');
     const list = (query: string, client = captain, base = boat.base) => client.get(`${base}/cards?${query}`);
     const seen: string[] = [];
-    let after: string | null = '';
-    while (after !== null) {
-      const { body } = await list(`limit=3${after ? `&after=${after}` : ''}`).expect(200);
-      seen.push(...body.cards.map((card: { serial: string }) => card.serial));
-      after = body.after;
+    for (let after: string | null = ''; after !== null; ) {
+      const answer: { body: { cards: { serial: string }[]; after: string | null } } = await list(
+        `limit=3${after ? `&after=${after}` : ''}`,
+      ).expect(200);
+      seen.push(...answer.body.cards.map(({ serial }) => serial));
+      after = answer.body.after;
     }
     expect([...seen].sort()).toEqual(Array.from({ length: 7 }, (_one, index) => `M-${1001 + index}`));
 
