@@ -156,7 +156,7 @@ export async function layTamarisk(laying: Laying): Promise<LaidVessel> {
   );
   const voyages = layVoyages(laying, vessel, times);
   const last = layParty(laying, vessel, {
-    name: 'Odhiambo',
+    name: 'Odhiambo party',
     voyageId: voyages.last,
     arrivesAt: calendar.at(-7, '15:00'),
     leavesAt: times.left,
@@ -175,7 +175,7 @@ export async function layTamarisk(laying: Laying): Promise<LaidVessel> {
     body: { guests: last.guests.length },
   });
   const party = layParty(laying, vessel, {
-    name: 'Brandvold',
+    name: 'Brandvold party',
     voyageId: voyages.now,
     arrivesAt: times.arrives,
     leavesAt: times.leaves,
@@ -239,7 +239,7 @@ function layVoyages(laying: Laying, vessel: LaidVessel, times: { left: Date; arr
   };
   const last = voyage('charter', 'Odhiambo charter', at(-7, '15:00'), times.left, 'Korčula', 'Split');
   const now = voyage('charter', 'Brandvold charter', times.arrives, times.leaves, 'Split', 'Korčula');
-  const second = { name: 'Castellane', arrivesAt: at(7, '15:00'), leavesAt: at(14, '10:00') };
+  const second = { name: 'Castellane party', arrivesAt: at(7, '15:00'), leavesAt: at(14, '10:00') };
   const secondId = voyage(
     'charter',
     'Castellane charter',
@@ -250,7 +250,7 @@ function layVoyages(laying: Laying, vessel: LaidVessel, times: { left: Date; arr
   );
   voyage('crossing', 'Crossing to Corfu', at(14, '16:00'), at(19, '09:00'), 'Split', 'Corfu');
   voyage('owner_trip', "Owner's trip", at(20, '12:00'), at(28, '10:00'), 'Corfu', 'Corfu');
-  const third = { name: 'Nakagawa-Reyes', arrivesAt: at(30, '15:00'), leavesAt: at(39, '10:00') };
+  const third = { name: 'Nakagawa-Reyes party', arrivesAt: at(30, '15:00'), leavesAt: at(39, '10:00') };
   const thirdId = voyage(
     'charter',
     'Nakagawa-Reyes charter',

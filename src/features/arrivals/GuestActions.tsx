@@ -39,7 +39,7 @@ export function GuestActions({
     onError: (error) => say(sentenceFor(error)),
   });
   return (
-    <div className="flex flex-wrap gap-x-2">
+    <div className="-ml-4 flex flex-wrap gap-x-2">
       {guest.ashoreAt ? (
         <Button kind="quiet" onClick={() => back.mutate()} busy={back.isPending && 'One moment…'}>
           Aboard again

@@ -66,7 +66,7 @@ function GuestRow({ guest, zone, visitor, sameCabin, selected, onSelect }: Guest
       aria-pressed={selected}
       onClick={onSelect}
       className={cx(
-        'grid min-h-14 w-full grid-cols-[1fr_auto] items-center gap-x-4 px-2.5 py-2 text-left sm:grid-cols-[9.5rem_1fr_auto]',
+        '-mx-2.5 grid min-h-14 w-[calc(100%+1.25rem)] grid-cols-[1fr_auto] items-center gap-x-4 px-2.5 py-2 text-left sm:grid-cols-[9.5rem_1fr_auto]',
         selected ? 'rounded-sm bg-land' : 'hover:bg-shoal',
       )}
     >

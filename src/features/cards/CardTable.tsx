@@ -109,7 +109,7 @@ export function CardTable({
             <Td className="whitespace-nowrap">
               <DateTime at={card.printedAt} zone={zone} as="moment" />
             </Td>
-            <Td className="text-right whitespace-nowrap">
+            <Td className="py-0 text-right whitespace-nowrap">
               {card.state === 'handed_over' ? (
                 <>
                   <Button kind="quiet" onClick={() => returned.mutate(card)}>

@@ -91,7 +91,7 @@ export function CrewList({ vesselId, zone, aboard, signedOff, mayManage }: CrewL
                 <Td className="whitespace-nowrap">
                   <DateTime at={member.signedOnAt} zone={zone} as="date" />
                 </Td>
-                <Td className="text-right whitespace-nowrap">
+                <Td className="py-0 text-right whitespace-nowrap">
                   {mayManage ? (
                     <>
                       <Button kind="quiet" onClick={() => setOpen({ kind: 'edit', member })}>
@@ -134,7 +134,7 @@ export function CrewList({ vesselId, zone, aboard, signedOff, mayManage }: CrewL
                 <Td className="whitespace-nowrap">
                   {member.signedOffAt ? <DateTime at={member.signedOffAt} zone={zone} as="date" /> : null}
                 </Td>
-                <Td className="text-right whitespace-nowrap">
+                <Td className="py-0 text-right whitespace-nowrap">
                   {mayManage ? (
                     <Button kind="quiet" onClick={() => back.mutate(member)}>
                       Sign on again

@@ -40,7 +40,7 @@ describe.each([
       `SELECT p.id, p.name, p.arrives_at FROM parties p JOIN vessels v ON v.id = p.vessel_id WHERE v.name = 'Tamarisk'`,
     );
     const today = parties.filter((party) => shipDate(party.arrives_at) === shipDate(now));
-    expect(today.map((party) => party.name)).toEqual(['Brandvold']);
+    expect(today.map((party) => party.name)).toEqual(['Brandvold party']);
     const guests = await system<{
       id: string;
       name: string | null;
