@@ -6,7 +6,7 @@ export interface KnownCabin {
 }
 
 const WORDS =
-  /\b(?:the|cabin|stateroom|room|no|cabine|chambre|cabina|camera|camarote|habitacion|kabine|zimmer|nr)\b/g;
+  /\b(?:the|cabin|stateroom|room|no|cabine|chambre|cabina|camera|camarote|habitacion|kabine|zimmer|nr|n)\b/g;
 
 /** The vessel's cabin a cell names, whatever its case, accents and the word "cabin"; null unless exactly one fits. */
 export function matchCabin(cell: string, cabins: readonly KnownCabin[]): string | null {

@@ -14,16 +14,21 @@ const SEPARATORS = [',', ';', '\t', '|'] as const;
 const QUOTED_LINES = 5;
 /** Headings are looked for in this many lines that are not blank: titles come before them. */
 const HEADING_WITHIN = 20;
+/** Lines cut to look for the headings, and lines cut at all, blank ones with them: a list is short (500 guests). */
+const LOOK_LINES = 60;
+export const LINES_MAX = 5000;
+const CELLS_MAX = 256;
 
 /**
  * Cuts a list into lines and cells. Fields in quotes may hold separators, line breaks and doubled quotes (RFC 4180
  * section 2); a quote elsewhere is a character like any other. A quote that is never closed costs its own line.
+ * Stops after `most` lines.
  */
-export function cutCells(text: string, separator: string): Line[] {
+export function cutCells(text: string, separator: string, most: number = LINES_MAX): Line[] {
   const lines: Line[] = [];
   let at = 0;
   let line = 1;
-  while (at < text.length) {
+  while (at < text.length && lines.length < most) {
     const record = cutRecord(text, at, separator);
     if (record) {
       lines.push({ line, cells: record.cells, broken: false });
@@ -63,6 +68,7 @@ function cutRecord(text: string, start: number, separator: string): Cut | null {
       while (at < text.length && text[at] !== separator && text[at] !== '\n' && text[at] !== '\r') at += 1;
       cells.push(text.slice(from, at).trimEnd());
     }
+    if (cells.length > CELLS_MAX) return null;
     if (text[at] !== separator) return { cells, end: afterBreak(text, at), breaks };
     at += 1;
   }
@@ -116,20 +122,16 @@ export interface Table {
 
 /** Finds the separator and the line of headings: those under which most columns are known. Null when there is none. */
 export function findTable(text: string): Table | null {
-  let best: { table: Table; known: number } | null = null;
+  let best: { separator: string; headings: Line; known: number } | null = null;
   for (const separator of SEPARATORS) {
-    const lines = cutCells(text, separator);
-    const candidates = lines.filter((one) => !isBlank(one)).slice(0, HEADING_WITHIN);
-    for (const candidate of candidates) {
-      const places = placesOf(candidate.cells);
-      if (!places) continue;
-      const known = Object.keys(places).length;
-      if (best && known <= best.known) continue;
-      best = {
-        known,
-        table: { headings: candidate.cells, lines: lines.filter(({ line }) => line > candidate.line) },
-      };
+    const candidates = cutCells(text, separator, LOOK_LINES).filter((one) => !isBlank(one));
+    for (const headings of candidates.slice(0, HEADING_WITHIN)) {
+      const known = Object.keys(placesOf(headings.cells) ?? {}).length;
+      if (known > (best?.known ?? 0)) best = { separator, headings, known };
     }
   }
-  return best?.table ?? null;
+  if (!best) return null;
+  const { separator, headings } = best;
+  const lines = cutCells(text, separator).filter(({ line }) => line > headings.line);
+  return { headings: headings.cells, lines };
 }
