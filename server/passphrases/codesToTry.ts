@@ -173,16 +173,10 @@ const EMPTY: Omit<Rotation, 'state' | 'dueAt' | 'takesOver' | 'from' | 'to' | 'h
 
 /** "Sun 14 June 03:00" in the zone given. */
 function inShipTime(at: Date, zone: string): string {
-  return Temporal.Instant.fromEpochMilliseconds(at.getTime())
-    .toZonedDateTimeISO(zone)
-    .toLocaleString('en-GB', {
-      weekday: 'short',
-      day: 'numeric',
-      month: 'long',
-      hour: '2-digit',
-      minute: '2-digit',
-      hourCycle: 'h23',
-    });
+  const time = Temporal.Instant.fromEpochMilliseconds(at.getTime()).toZonedDateTimeISO(zone);
+  const part = (options: Intl.DateTimeFormatOptions) => time.toPlainDate().toLocaleString('en-GB', options);
+  const clock = time.toPlainTime().toString({ smallestUnit: 'minute' });
+  return `${part({ weekday: 'short' })} ${time.day} ${part({ month: 'long' })} ${clock}`;
 }
 
 /** Opens what is to be shown, as words and as the standard payload. The caller has written the log first. */
