@@ -44,9 +44,13 @@ export async function verifyChain(
   vesselId: string,
   signed: { readonly key: KeyObject; readonly outside: readonly Checkpoint[] },
 ): Promise<Verdict> {
-  const checkpoints = [...(await storedCheckpoints(db, tx, vesselId)), ...signed.outside];
-  const genuine = checkpoints.filter((one) => one.vesselId === vesselId && isGenuine(signed.key, one));
-  const expected = new Map(genuine.map((one) => [one.seq, one.hash]));
+  const outside = signed.outside.filter((one) => one.vesselId === vesselId);
+  const checkpoints = [...(await storedCheckpoints(db, tx, vesselId)), ...outside];
+  const genuine = checkpoints.filter((one) => isGenuine(signed.key, one));
+  // All of them count: a log written anew and signed again by its server still meets the head signed before.
+  const expected = new Map<number, string[]>();
+  for (const { seq: signedSeq, hash: signedHash } of genuine)
+    expected.set(signedSeq, [...(expected.get(signedSeq) ?? []), signedHash]);
   let seq = 0;
   let hash: Buffer = GENESIS;
   const stop = (at: number, why: string): Verdict => ({
@@ -106,12 +110,10 @@ function faultOf(row: Row, vesselId: string, seq: number, hash: Buffer): string 
   return null;
 }
 
-const forged = (expected: ReadonlyMap<number, string>, seq: number, hash: Buffer): string | null => {
-  const known = expected.get(seq);
-  return known !== undefined && known !== hash.toString('hex')
+const forged = (expected: ReadonlyMap<number, string[]>, seq: number, hash: Buffer): string | null =>
+  expected.get(seq)?.some((known) => known !== hash.toString('hex'))
     ? 'a signed checkpoint knows another entry here'
     : null;
-};
 
 // Instants are written in milliseconds; more digits than that were not written by us and change the hash.
 const AT = `to_char(e.at AT TIME ZONE 'UTC', 'YYYY-MM-DD"T"HH24:MI:SS.US')`;
