@@ -192,6 +192,8 @@ function makeRoles(data, { run }, secrets) {
 
 /** Starts the server on the first free port from `port` on; gives that port. */
 async function startServer({ data, programs, fast, port: first }) {
+  // PostgreSQL refuses a folder that others may enter, which copying or restoring it easily makes.
+  chmodSync(data, 0o700);
   for (let port = first; port < first + PORTS_TRIED && port < 65_536; port += 1) {
     if (await portTaken(port, '127.0.0.1')) continue;
     const settings = {
