@@ -155,8 +155,6 @@ function stagedRow(row: StageRow, toId: string, now: Date) {
     mode: row.mode,
     epoch: ticket.epoch,
     ticket: ticket.number,
-    generation: row.last_generation + 1,
-    from_id: row.from_id,
     to_id: toId,
     due_at: row.due_at.toISOString(),
     access_points: row.access_points,
@@ -164,25 +162,53 @@ function stagedRow(row: StageRow, toId: string, now: Date) {
   };
 }
 
+/**
+ * Written with lookups by key only: the fences between vessels hide from the planner how many rows there are, so
+ * it would join a list of rows with a whole table by trying every pair.
+ */
 async function storeStaged(
   services: Services,
   tx: Tx,
   staged: readonly ReturnType<typeof stagedRow>[],
   now: Date,
 ): Promise<void> {
-  await services.db.run(
+  const { db } = services;
+  const ids = staged.map((one) => one.id);
+  await db.run(
     tx,
-    `WITH given AS (
-       SELECT * FROM jsonb_to_recordset($rows::jsonb) AS g(id uuid, vessel_id uuid, network_id uuid, driver text,
-         epoch integer, ticket bigint, generation integer, from_id uuid, to_id uuid, state text, access_points uuid[])),
-     counted AS (
-       UPDATE networks n SET last_ticket = g.ticket, last_generation = g.generation FROM given g WHERE n.id = g.network_id),
-     frozen AS (
-       INSERT INTO rotation_targets(rotation_id, access_point_id, vessel_id)
-       SELECT g.id, a, g.vessel_id FROM given g, unnest(g.access_points) AS a)
-     UPDATE rotations r SET state = g.state, driver = g.driver, epoch = g.epoch, ticket = g.ticket,
-       from_passphrase_id = g.from_id, to_passphrase_id = g.to_id, staged_at = $now, updated_at = $now
-     FROM given g WHERE r.id = g.id`,
-    { rows: JSON.stringify(staged), now },
+    'UPDATE networks SET last_ticket = last_ticket + 1, last_generation = last_generation + 1 WHERE id = ANY($ids::uuid[])',
+    { ids: staged.map((one) => one.network_id) },
+  );
+  const stored = await db.run<{ id: string; ticket: string; to_passphrase_id: string }>(
+    tx,
+    `UPDATE rotations r SET state = 'staged', driver = v.driver, epoch = v.epoch, ticket = n.last_ticket, staged_at = $now,
+       updated_at = $now,
+       from_passphrase_id = (SELECT id FROM passphrases f
+         WHERE f.network_id = r.network_id AND f.live_at IS NOT NULL AND f.retired_at IS NULL),
+       to_passphrase_id = (SELECT id FROM passphrases t
+         WHERE t.network_id = r.network_id AND t.generation = n.last_generation)
+     FROM networks n, vessels v WHERE r.id = ANY($ids::uuid[]) AND n.id = r.network_id AND v.id = r.vessel_id
+     RETURNING r.id, r.ticket, r.to_passphrase_id`,
+    { ids, now },
+  );
+  const known = new Map(stored.map((row) => [row.id, row]));
+  for (const one of staged) {
+    const row = known.get(one.id);
+    if (row?.to_passphrase_id !== one.to_id || Number(row.ticket) !== one.ticket || one.state !== 'staged') {
+      throw new AppError(
+        'conflict',
+        'This change was altered while it was being prepared. It is tried again.',
+      );
+    }
+  }
+  await db.run(
+    tx,
+    `INSERT INTO rotation_targets(rotation_id, access_point_id, vessel_id)
+     SELECT * FROM unnest($rotations::uuid[], $accessPoints::uuid[], $vessels::uuid[])`,
+    {
+      rotations: staged.flatMap((one) => one.access_points.map(() => one.id)),
+      accessPoints: staged.flatMap((one) => one.access_points),
+      vessels: staged.flatMap((one) => one.access_points.map(() => one.vessel_id)),
+    },
   );
 }
