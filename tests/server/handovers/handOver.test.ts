@@ -1,261 +1,295 @@
 import { randomUUID } from 'node:crypto';
 import { describe, expect, test } from 'vitest';
 import { useApp } from '../../support/app.ts';
-import { factories } from '../../support/factories.ts';
-import { aboard } from '../voyages/aboard.ts';
+import { at, type Boat, boats, day } from '../../support/boat.ts';
+import { anonymousClient, type Client } from '../../support/client.ts';
 
 const app = useApp();
-const make = factories(app);
+const world = boats(app);
 
-/** A vessel with one guest aboard, one card printed for them, and how to hand over. */
-async function ready() {
-  const boat = await aboard(app, make);
-  const partyId = await boat.party();
-  const guestId = await boat.guest(partyId);
-  const card = await boat.printCard(guestId);
-  const hand = (body: object = {}, client = boat.purser) =>
-    client.post(`${boat.base}/handovers`, { guestId, networkId: boat.network.id, channel: 'card', ...body });
-  const state = async () =>
-    (
-      await boat.rows(
-        `SELECT k.state, (SELECT count(*)::int FROM handovers h WHERE h.vessel_id = $vessel AND undone_at IS NULL) AS handovers,
-           (SELECT count(*)::int FROM holders o WHERE o.vessel_id = $vessel) AS holders,
-           (SELECT count(*)::int FROM log_entries e WHERE e.vessel_id = $vessel AND e.kind LIKE 'handover.%') AS entries
-         FROM cards k WHERE k.id = $card`,
-        { card: card.id },
-      )
-    )[0];
-  return { ...boat, partyId, guestId, card, hand, state };
-}
-
-/** A change whose passphrase is made and that is due in `hours`. */
-async function staged(boat: Awaited<ReturnType<typeof ready>>, hours: number): Promise<string> {
-  const captain = await boat.as('captain');
-  await captain
-    .post(`${boat.base}/networks/${boat.network.id}/rotations/now`, { reason: 'routine' })
-    .expect(201);
-  const dueAt = new Date(app.clock.now().getTime() + hours * 3_600_000);
-  await boat.run("UPDATE rotations SET due_at = $dueAt WHERE network_id = $network AND state = 'staged'", {
-    dueAt,
-    network: boat.network.id,
-  });
-  const [row] = await boat.rows<{ id: string }>(
-    "SELECT to_passphrase_id AS id FROM rotations WHERE network_id = $network AND state = 'staged'",
-    { network: boat.network.id },
+const handOver = (client: Client, boat: Boat, body: object) =>
+  client.post(`${boat.base}/handovers`, { networkId: boat.networks.guest.id, channel: 'card', ...body });
+const print = (client: Client, boat: Boat, body: object, audience: 'owner' | 'guest' | 'crew' = 'guest') =>
+  client
+    .post(`${boat.base}/networks/${boat.networks[audience].id}/cards/print`, { format: 'wallet', ...body })
+    .expect(200);
+const cards = (boat: Boat) =>
+  world.rows<{ id: string; serial: string; state: string; guest_id: string | null }>(
+    'SELECT id, serial, state, guest_id FROM cards WHERE vessel_id = $v ORDER BY serial',
+    { v: boat.vesselId },
   );
-  if (!row) throw new Error('nothing staged');
-  return row.id;
-}
+const holders = (boat: Boat) =>
+  world.rows<{ holder_id: string; through: string }>(
+    "SELECT holder_id, through FROM holders WHERE vessel_id = $v AND holder_kind <> 'person' ORDER BY since, holder_id",
+    { v: boat.vesselId },
+  );
+const logOf = (boat: Boat, kind: string) =>
+  world.rows<{ subject_id: string; name: string | null; body: Record<string, unknown> }>(
+    `SELECT e.subject_id, n.name, e.body FROM log_entries e LEFT JOIN log_names n ON n.entry_id = e.id AND n.role = 'subject'
+     WHERE e.vessel_id = $v AND e.kind = $kind ORDER BY e.seq`,
+    { v: boat.vesselId, kind },
+  );
 
-describe('handing over', () => {
-  test('writes the card, the receipt, the holder and the log in one transaction', async () => {
-    const boat = await ready();
-    const done = await boat.hand().expect(201);
-    expect(done.body).toMatchObject({
+describe('handing over a printed card', () => {
+  test('one transaction tells the whole story: card, receipt, holder, log with the name, and the screen', async () => {
+    const boat = await world.boat();
+    const purser = await boat.as('purser', 'Ines Okafor-Lund');
+    const guest = at(boat.guests, 1);
+    await print(purser, boat, { guestIds: [guest.id] });
+    const answer = (await handOver(purser, boat, { guestId: guest.id }).expect(201)).body;
+    expect(answer).toMatchObject({
       which: 'live',
-      passphraseId: boat.network.passphraseId,
       already: false,
-      sentence: `Card ${boat.card.serial} handed over.`,
+      passphraseId: boat.networks.guest.passphraseId,
+      sentence: 'Card M-1001 handed over.',
     });
-    expect(new Date(done.body.undoUntil).getTime() - new Date(done.body.at).getTime()).toBe(10_000);
-    expect(await boat.state()).toEqual({ state: 'handed_over', handovers: 1, holders: 1, entries: 1 });
+    expect(Date.parse(answer.undoUntil) - Date.parse(answer.at)).toBe(10_000);
+    expect(await cards(boat)).toMatchObject([{ serial: 'M-1001', state: 'handed_over' }]);
+    expect(await holders(boat)).toEqual([{ holder_id: guest.id, through: 'card' }]);
+    expect(await logOf(boat, 'handover.card')).toMatchObject([
+      { subject_id: guest.id, name: 'Matteo Quaranta', body: { serial: 'M-1001' } },
+    ]);
+    const screen = (await purser.get(`${boat.base}/arrivals`).expect(200)).body;
+    const shown = screen.guests.find((one: { id: string }) => one.id === guest.id);
+    expect(shown.handover).toMatchObject({ id: answer.handoverId, channel: 'card', serial: 'M-1001' });
+    expect(screen.guests.filter((one: { handover: object | null }) => one.handover !== null)).toHaveLength(1);
   });
 
-  test('twice is once, and says so; two at the same moment are one', async () => {
-    const boat = await ready();
-    const stew = await boat.as('chief_stew');
-    const both = await Promise.all([boat.hand(), boat.hand({ cardId: boat.card.id }, stew)]);
-    expect(both.map(({ status }) => status)).toEqual([201, 201]);
-    expect(both.map(({ body }) => body.already).sort()).toEqual([false, true]);
-    expect(new Set(both.map(({ body }) => body.handoverId)).size).toBe(1);
-    const third = await boat.hand().expect(201);
-    expect(third.body).toMatchObject({
-      already: true,
-      sentence: 'This was handed over already; it is in the log once.',
+  test('two people at once leave one handover, and the second is told so', async () => {
+    const boat = await world.boat();
+    const guest = at(boat.guests, 0);
+    const clients = [await boat.as('purser'), await boat.as('chief_stew')];
+    await print(at(clients, 0), boat, { guestIds: [guest.id] });
+    const answers = await Promise.all(
+      clients.map((client) => handOver(client, boat, { guestId: guest.id }).expect(201)),
+    );
+    expect(answers.map(({ body }) => body.already).sort()).toEqual([false, true]);
+    expect(answers.find(({ body }) => body.already)?.body.sentence).toBe(
+      'This was handed over already; it is in the log once.',
+    );
+    expect(new Set(answers.map(({ body }) => body.handoverId)).size).toBe(1);
+    expect(await logOf(boat, 'handover.card')).toHaveLength(1);
+    expect(await holders(boat)).toHaveLength(1);
+  });
+
+  test('one blank in two hands at once goes to one guest only', async () => {
+    const boat = await world.boat();
+    const clients = [await boat.as('purser'), await boat.as('chief_stew')];
+    await print(at(clients, 0), boat, { blanks: 1 });
+    const cardId = at(await cards(boat), 0).id;
+    const answers = await Promise.all(
+      clients.map((client, index) => handOver(client, boat, { guestId: at(boat.guests, index).id, cardId })),
+    );
+    expect(answers.map(({ status }) => status).sort()).toEqual([201, 409]);
+    expect(answers.find(({ status }) => status === 409)?.body.detail).toBe(
+      'Card M-1001 was handed to somebody else. Print another.',
+    );
+    expect(await holders(boat)).toHaveLength(1);
+  });
+
+  test('the same request again, by its key, is the same handover', async () => {
+    const boat = await world.boat();
+    const purser = await boat.as('purser');
+    await print(purser, boat, { guestIds: [at(boat.guests, 0).id] });
+    const key = randomUUID();
+    const send = () => handOver(purser, boat, { guestId: at(boat.guests, 0).id }).set('Idempotency-Key', key);
+    const first = await send().expect(201);
+    const second = await send().expect(201);
+    expect(second.body).toEqual(first.body);
+    expect(await logOf(boat, 'handover.card')).toHaveLength(1);
+  });
+
+  test('who comes after the change gets the next passphrase, and not today’s card', async () => {
+    const boat = await world.boat();
+    const purser = await boat.as('purser');
+    const { id } = boat.networks.guest;
+    await print(purser, boat, { blanks: 1 });
+    const today = at(await cards(boat), 0).id;
+    const next = await world.staged(
+      boat.vesselId,
+      id,
+      `staged-marker-${boat.vesselId.slice(0, 8)}`,
+      day(app, 6, 1),
+    );
+    const partyId = await world.party(boat.vesselId, day(app, 6, 5), day(app, 13), 'Abara party');
+    const guestId = await world.guest(boat.vesselId, partyId, {
+      name: 'Runa Abara',
+      from: day(app, 6, 5),
+      until: day(app, 13),
     });
-    expect(await boat.state()).toEqual({ state: 'handed_over', handovers: 1, holders: 1, entries: 1 });
+    const wrong = await handOver(purser, boat, { guestId, cardId: today }).expect(409);
+    expect(wrong.body.detail).toContain('the change comes between');
+    await print(purser, boat, { guestIds: [guestId] });
+    const right = (await handOver(purser, boat, { guestId }).expect(201)).body;
+    expect(right).toMatchObject({ which: 'staged', passphraseId: next });
+    // The innocent neighbour aboard now keeps today's.
+    const now = (await handOver(purser, boat, { guestId: at(boat.guests, 0).id, cardId: today }).expect(201))
+      .body;
+    expect(now).toMatchObject({ which: 'live', passphraseId: boat.networks.guest.passphraseId });
   });
 
-  test('eight at once through eight connections leave one', async () => {
-    const boat = await ready();
-    const all = await Promise.all(Array.from({ length: 8 }, () => boat.hand()));
-    expect(all.filter(({ body }) => body.already === false)).toHaveLength(1);
-    expect(await boat.state()).toEqual({ state: 'handed_over', handovers: 1, holders: 1, entries: 1 });
-  });
-
-  test('undo within ten seconds and the moment the request takes, not later', async () => {
-    const boat = await ready();
-    const at = app.clock.now();
-    try {
-      const first = await boat.hand().expect(201);
-      app.clock.set(new Date(at.getTime() + 15_000));
-      const undo = `${boat.base}/handovers/${first.body.handoverId}/undo`;
-      await boat.purser.post(undo).expect(200);
-      await boat.purser.post(undo).expect(200);
-      expect(await boat.state()).toEqual({ state: 'printed', handovers: 0, holders: 0, entries: 2 });
-
-      const second = await boat.hand().expect(201);
-      expect(second.body.already).toBe(false);
-      app.clock.advance(15_001);
-      const late = await boat.purser
-        .post(`${boat.base}/handovers/${second.body.handoverId}/undo`)
-        .expect(409);
-      expect(late.body.detail).toContain('too late');
-      expect(await boat.state()).toMatchObject({ state: 'handed_over', handovers: 1, holders: 1 });
-    } finally {
-      app.clock.set(at);
-    }
-  });
-
-  test('undoing the screen leaves what the card told', async () => {
-    const boat = await ready();
-    await boat.hand().expect(201);
-    const screen = await boat.hand({ channel: 'screen' }).expect(201);
-    expect(screen.body.sentence).toBe('Shown on screen and logged.');
-    await boat.purser.post(`${boat.base}/handovers/${screen.body.handoverId}/undo`).expect(200);
-    expect(await boat.state()).toMatchObject({ state: 'handed_over', handovers: 1, holders: 1 });
-  });
-
-  test('who comes aboard after the staged change gets the passphrase to come, others the one in force', async () => {
-    const boat = await ready();
-    const next = await staged(boat, 24);
-    const later = await boat.guest(boat.partyId, 'Ben Vela', { fromAt: boat.hours(25) });
-    const old = await boat.printCard(later);
-    const now = await boat.hand({ guestId: later, cardId: old.id }).expect(409);
-    expect(now.body.detail).toContain('Print a new one');
-    const fresh = await boat.printCard(later, next);
-    const seen = await boat.purser.get(`${boat.base}/arrivals`).expect(200);
-    expect(seen.body.network.staged).toEqual({ passphraseId: next, from: boat.hours(24) });
-    expect(seen.body.guests).toMatchObject([{ printedCard: boat.card }, { printedCard: fresh }]);
-    expect((await boat.hand({ guestId: later }).expect(201)).body).toMatchObject({
-      which: 'staged',
-      passphraseId: next,
-    });
-    expect((await boat.hand().expect(201)).body).toMatchObject({ which: 'live' });
-  });
-
-  test('refusals, each with what to do', async () => {
-    const boat = await ready();
-    const other = await boat.guest(boat.partyId, 'Ben Vela');
-    const none = await boat.hand({ guestId: other }).expect(409);
+  test('without a printed card it says what to do, and writes nothing', async () => {
+    const boat = await world.boat();
+    const purser = await boat.as('purser');
+    const none = await handOver(purser, boat, { guestId: at(boat.guests, 0).id }).expect(409);
     expect(none.body.detail).toBe(
       'No card is printed for them yet. Print one, or show the code on the screen.',
     );
-    const theirs = await boat.hand({ guestId: other, cardId: boat.card.id }).expect(409);
-    expect(theirs.body.detail).toContain('was printed for somebody else');
-    const blank = await boat.printCard(null);
-    await boat.hand({ cardId: blank.id }).expect(201);
-    const taken = await boat.hand({ guestId: other, cardId: blank.id }).expect(409);
-    expect(taken.body.detail).toContain('was handed to somebody else');
-    await boat.run("UPDATE cards SET state = 'void' WHERE id = $id", { id: boat.card.id });
-    await boat.hand({ cardId: boat.card.id }).expect(409);
-    await boat.hand({ guestId: randomUUID() }).expect(404);
-    await boat.hand({ networkId: randomUUID() }).expect(404);
-    await boat.hand({ cardId: randomUUID() }).expect(404);
-    const neither = await boat.hand({ guestId: undefined }).expect(422);
-    expect(neither.body.errors).toEqual({ guestId: ['Say which guest or which crew member it is for'] });
-    await boat.hand({ channel: 'mail' }).expect(422);
-    await boat.purser.post(`${boat.base}/guests/${boat.guestId}/ashore`).expect(200);
-    expect((await boat.hand({ channel: 'screen' }).expect(409)).body.detail).toContain('ashore');
-    const bare = await make.network(boat.vesselId, { audience: 'guest', ssid: 'Without' });
-    const empty = await boat.hand({ guestId: other, networkId: bare.id, channel: 'screen' }).expect(409);
-    expect(empty.body.detail).toContain('type it in first');
+    await print(purser, boat, { guestIds: [at(boat.guests, 1).id] });
+    const theirs = at(await cards(boat), 0).id;
+    const other = await handOver(purser, boat, { guestId: at(boat.guests, 0).id, cardId: theirs }).expect(
+      409,
+    );
+    expect(other.body.detail).toContain('was printed for somebody else');
+    await purser.post(`${boat.base}/cards/${theirs}/void`).expect(200);
+    const gone = await handOver(purser, boat, { guestId: at(boat.guests, 1).id, cardId: theirs }).expect(409);
+    expect(gone.body.detail).toBe('Card M-1001 no longer counts. Print a new one.');
+    expect(await holders(boat)).toEqual([]);
+    expect(await logOf(boat, 'handover.card')).toEqual([]);
   });
 
-  test("each audience asks for its own right, and a network of another vessel is nobody's", async () => {
-    const [boat, far] = [await ready(), await ready()];
-    const crew = await make.network(boat.vesselId, {
-      audience: 'crew',
-      live: `crew-of-${boat.vesselId.slice(0, 13)}`,
-    });
-    const owner = await make.network(boat.vesselId, {
-      audience: 'owner',
-      live: `owner-of-${boat.vesselId.slice(0, 13)}`,
-    });
-    const crewMemberId = randomUUID();
-    await boat.run(
-      `INSERT INTO crew_members(id, vessel_id, name, position, signed_on_at, created_at, updated_at)
-       VALUES ($id, $vessel, 'Tomas Reyes', 'Bosun', $now, $now, $now)`,
-      { id: crewMemberId, vessel: boat.vesselId, now: app.clock.now() },
-    );
-    const give = async (role: 'purser' | 'chief_stew' | 'captain' | 'eto', networkId: string) =>
-      (await boat.as(role)).post(`${boat.base}/handovers`, { crewMemberId, networkId, channel: 'screen' });
-    expect((await give('purser', crew.id)).status).toBe(403);
-    expect((await give('eto', crew.id)).status).toBe(403);
-    expect((await give('chief_stew', owner.id)).status).toBe(403);
-    expect((await give('chief_stew', crew.id)).status).toBe(201);
-    expect((await give('captain', owner.id)).status).toBe(201);
-    expect((await give('captain', far.network.id)).status).toBe(404);
+  test('R14, R15: each audience by its own roles, and nobody else’s vessel, guest, network or card', async () => {
+    const boat = await world.boat();
+    const other = await world.boat({ name: 'Corvina' });
     const captain = await boat.as('captain');
-    const wrong = await boat.hand({ networkId: crew.id, channel: 'screen' }, captain).expect(422);
-    expect(wrong.body.errors).toEqual({ networkId: ['The crew network is not for guests'] });
-    const done = await far.hand().expect(201);
-    await boat.purser.post(`${boat.base}/handovers/${done.body.handoverId}/undo`).expect(404);
+    await print(captain, boat, { blanks: 1 });
+    await print(await other.as('captain'), other, { blanks: 1 });
+    const guestId = at(boat.guests, 0).id;
+    const foreignCard = at(await cards(other), 0).id;
+    await handOver(anonymousClient(app), boat, { guestId }).expect(401);
+    await handOver(await boat.as('eto'), boat, { guestId, channel: 'screen' }).expect(403);
+    await handOver(await boat.as('crew'), boat, { guestId, channel: 'screen' }).expect(403);
+    await handOver(await other.as('captain'), boat, { guestId, channel: 'screen' }).expect(404);
+    const purser = await boat.as('purser');
+    const crew = { crewMemberId: boat.crewMemberId, networkId: boat.networks.crew.id, channel: 'screen' };
+    await handOver(purser, boat, crew).expect(403);
+    await handOver(purser, boat, { guestId, networkId: boat.networks.owner.id, channel: 'screen' }).expect(
+      403,
+    );
+    await handOver(purser, boat, { guestId: at(other.guests, 0).id, channel: 'screen' }).expect(404);
+    await handOver(purser, boat, { guestId, networkId: other.networks.guest.id, channel: 'screen' }).expect(
+      404,
+    );
+    await handOver(purser, boat, { guestId, cardId: foreignCard }).expect(404);
+    expect(await holders(boat)).toEqual([]);
+    expect((await cards(other)).map(({ state }) => state)).toEqual(['printed']);
+
+    await handOver(await boat.as('chief_stew'), boat, crew).expect(201);
+    await handOver(await boat.as('owner_keeper'), boat, {
+      guestId,
+      networkId: boat.networks.owner.id,
+      channel: 'screen',
+    }).expect(201);
+    expect(await holders(boat)).toHaveLength(2);
+  });
+
+  test('every wrong field is named', async () => {
+    const boat = await world.boat();
+    const purser = await boat.as('purser');
+    const wrong = await purser
+      .post(`${boat.base}/handovers`, { guestId: 'x', networkId: 7, channel: 'pigeon', extra: 1 })
+      .expect(422);
+    expect(Object.keys(wrong.body.errors).sort()).toEqual(['channel', 'extra', 'guestId', 'networkId']);
+    await handOver(purser, boat, {}).expect(422);
+    await handOver(purser, boat, { guestId: at(boat.guests, 0).id, crewMemberId: boat.crewMemberId }).expect(
+      422,
+    );
+    await handOver(purser, boat, {
+      guestId: at(boat.guests, 0).id,
+      networkId: boat.networks.crew.id,
+      channel: 'screen',
+    }).expect(403);
   });
 });
 
-describe('leaving', () => {
-  test('a guest who leaves exposes the network and the change moves up; back aboard it is in order again', async () => {
-    const boat = await ready();
-    await boat.hand().expect(201);
-    const gone = await boat.purser.post(`${boat.base}/guests/${boat.guestId}/ashore`).expect(200);
-    expect(gone.body.ashoreAt).toBe(app.clock.now().toISOString());
-    const stew = await boat.as('chief_stew');
-    const seen = await stew.get(`${boat.base}/holders`).expect(200);
-    expect(seen.body.networks).toMatchObject([
-      { id: boat.network.id, departed: 1, leaks: [], holders: [{ name: 'Anna Brandt', through: 'card' }] },
+describe('undo', () => {
+  const undo = (client: Client, boat: Boat, id: string) => client.post(`${boat.base}/handovers/${id}/undo`);
+
+  test('puts card, holder and screen back as they were, and says so in the log', async () => {
+    const boat = await world.boat();
+    const purser = await boat.as('purser');
+    const guest = at(boat.guests, 0);
+    await print(purser, boat, { guestIds: [guest.id] });
+    const { handoverId } = (await handOver(purser, boat, { guestId: guest.id }).expect(201)).body;
+    await undo(purser, boat, handoverId).expect(200);
+    expect(await cards(boat)).toMatchObject([{ state: 'printed', guest_id: guest.id }]);
+    expect(await holders(boat)).toEqual([]);
+    expect(await logOf(boat, 'handover.undone')).toMatchObject([
+      { subject_id: guest.id, body: { serial: 'M-1001' } },
     ]);
-    const plan = await boat.rows<{ reasons: { code: string }[] }>(
-      "SELECT reasons FROM rotations WHERE network_id = $network AND state = 'planned'",
-      { network: boat.network.id },
-    );
-    expect(plan[0]?.reasons.map(({ code }) => code)).toContain('departed_guest');
-    await boat.purser.post(`${boat.base}/guests/${boat.guestId}/back`).expect(200);
-    expect((await stew.get(`${boat.base}/holders`).expect(200)).body.networks[0].departed).toBe(0);
-    expect(await boat.kinds()).toEqual(expect.arrayContaining(['guest.ashore', 'guest.back']));
+    await undo(purser, boat, handoverId).expect(200);
+    expect(await logOf(boat, 'handover.undone')).toHaveLength(1);
+    // And it can be done again, as if nothing had been.
+    const again = (await handOver(purser, boat, { guestId: guest.id }).expect(201)).body;
+    expect(again.already).toBe(false);
+    expect(again.handoverId).not.toBe(handoverId);
   });
 
-  test('a party leaves with one card missing: a leak, and a change', async () => {
-    const boat = await ready();
-    const other = await boat.guest(boat.partyId, 'Ben Vela');
-    const lost = await boat.printCard(other);
-    await boat.hand().expect(201);
-    await boat.hand({ guestId: other }).expect(201);
-    const far = await ready();
-    const path = `${boat.base}/parties/${boat.partyId}/ashore`;
-    const wrong = await boat.purser
-      .post(path, { cards: [{ cardId: far.card.id, state: 'lost' }] })
-      .expect(422);
-    expect(wrong.body.errors).toEqual({ 'cards.0.cardId': ['This card was not for anybody of this party'] });
-    const left = await boat.purser
-      .post(path, {
-        cards: [
-          { cardId: boat.card.id, state: 'returned' },
-          { cardId: lost.id, state: 'lost' },
-        ],
-      })
-      .expect(200);
-    expect(left.body).toMatchObject({
-      party: { ashoreAt: app.clock.now().toISOString() },
-      lostCards: 1,
-      exposed: [{ networkId: boat.network.id }],
+  test('a guest who was shown the code as well still holds it', async () => {
+    const boat = await world.boat();
+    const purser = await boat.as('purser');
+    const guest = at(boat.guests, 0);
+    await handOver(purser, boat, { guestId: guest.id, channel: 'screen' }).expect(201);
+    await print(purser, boat, { guestIds: [guest.id] });
+    const { handoverId } = (await handOver(purser, boat, { guestId: guest.id }).expect(201)).body;
+    await undo(purser, boat, handoverId).expect(200);
+    expect(await holders(boat)).toEqual([{ holder_id: guest.id, through: 'screen' }]);
+  });
+
+  test('15 seconds are taken, 16 are too late; only by who may hand over, only on that vessel', async () => {
+    const boat = await world.boat();
+    const other = await world.boat({ name: 'Corvina' });
+    const purser = await boat.as('purser');
+    const give = async (index: number): Promise<string> =>
+      (await handOver(purser, boat, { guestId: at(boat.guests, index).id, channel: 'screen' }).expect(201))
+        .body.handoverId;
+    const first = await give(0);
+    await undo(await boat.as('eto'), boat, first).expect(403);
+    await undo(await other.as('captain'), boat, first).expect(404);
+    await undo(await other.as('captain'), other, first).expect(404);
+    await undo(purser, boat, randomUUID()).expect(404);
+    app.clock.advance(15_000);
+    await undo(purser, boat, first).expect(200);
+    const second = await give(1);
+    app.clock.advance(15_001);
+    const late = await undo(purser, boat, second).expect(409);
+    expect(late.body.detail).toContain('too late');
+    expect(await holders(boat)).toHaveLength(1);
+  });
+});
+
+describe('who holds what', () => {
+  test('current and departed of each network, through what and since when; the owner’s only as a count to others', async () => {
+    const boat = await world.boat();
+    const captain = await boat.as('captain');
+    const purser = await boat.as('purser');
+    const guest = at(boat.guests, 0);
+    await handOver(purser, boat, { guestId: guest.id, channel: 'screen' }).expect(201);
+    await handOver(captain, boat, {
+      guestId: at(boat.guests, 1).id,
+      networkId: boat.networks.owner.id,
+      channel: 'screen',
+    }).expect(201);
+    await purser.post(`${boat.base}/guests/${guest.id}/ashore`).expect(200);
+    type Network = {
+      audience: string;
+      current: number;
+      departed: number;
+      holders: { name: string }[] | null;
+    };
+    const read = async (client: Client): Promise<Record<string, Network>> => {
+      const { networks } = (await client.get(`${boat.base}/holders`).expect(200)).body;
+      return Object.fromEntries(networks.map((one: Network) => [one.audience, one]));
+    };
+    const seen = await read(captain);
+    expect(seen.guest).toMatchObject({
+      current: 0,
+      departed: 1,
+      holders: [{ name: 'Sigrun Brandvold', through: 'screen', departedAt: app.clock.now().toISOString() }],
     });
-    expect(left.body.exposed[0].changeAt).not.toBeNull();
-    await boat.purser.post(path).expect(409);
-    expect(
-      await boat.rows('SELECT serial, state FROM cards WHERE vessel_id = $vessel ORDER BY serial'),
-    ).toEqual([
-      { serial: boat.card.serial, state: 'returned' },
-      { serial: lost.serial, state: 'lost' },
-    ]);
-    expect(await boat.rows('SELECT kind, card_id FROM leaks WHERE vessel_id = $vessel')).toEqual([
-      { kind: 'lost_card', card_id: lost.id },
-    ]);
-    expect(
-      await boat.rows(
-        'SELECT count(*)::int AS gone FROM holders WHERE vessel_id = $vessel AND departed_at IS NOT NULL',
-      ),
-    ).toEqual([{ gone: 2 }]);
-    await boat.purser.post(`${boat.base}/guests`, { partyId: boat.partyId, name: 'Late' }).expect(422);
+    expect(seen.owner).toMatchObject({ current: 1, departed: 0, holders: [{ name: 'Matteo Quaranta' }] });
+    expect((await read(purser)).owner).toMatchObject({ current: 1, departed: 0, holders: null });
+    expect((await read(purser)).guest?.holders).toHaveLength(1);
+    await (await boat.as('eto')).get(`${boat.base}/holders`).expect(403);
   });
 });

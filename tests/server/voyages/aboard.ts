@@ -49,7 +49,7 @@ export async function aboard(app: TestApp, make: ReturnType<typeof factories>) {
     return made.body.id;
   };
   /** A card as the print room would leave it. */
-  const card = async (
+  const printCard = async (
     guestId: string | null,
     passphraseId = network.passphraseId,
   ): Promise<{ id: string; serial: string }> => {
@@ -72,5 +72,5 @@ export async function aboard(app: TestApp, make: ReturnType<typeof factories>) {
     (await rows<{ kind: string }>('SELECT kind FROM log_entries WHERE vessel_id = $vessel ORDER BY seq')).map(
       ({ kind }) => kind,
     );
-  return { vesselId, network, base, purser, as, run, rows, cabin, party, guest, card, hours, kinds };
+  return { vesselId, network, base, purser, as, run, rows, cabin, party, guest, printCard, hours, kinds };
 }

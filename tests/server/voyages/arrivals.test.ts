@@ -18,7 +18,7 @@ describe('the arrivals screen', () => {
       await boat.guest(partyId, 'Anna Brandt', { cabinId: two, language: 'it' }),
       await boat.guest(partyId, null, { cabinId: one, under16: true }),
     ];
-    const card = await boat.card(anna);
+    const card = await boat.printCard(anna);
     const seen = await boat.purser.get(`${boat.base}/arrivals`).expect(200);
     expect(seen.body).toMatchObject({
       zone: 'Europe/Zagreb',
