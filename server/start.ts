@@ -1,6 +1,6 @@
 import type { createServer as CreateServer, Server } from 'node:http';
 import type { AddressInfo } from 'node:net';
-import { pino } from 'pino';
+import { type Logger, pino } from 'pino';
 import { createApp } from './app.ts';
 import type { Config } from './config.ts';
 import { Database } from './db/connection.ts';
@@ -21,16 +21,20 @@ export interface Running {
 export interface StartOptions {
   readonly createServer: typeof CreateServer;
   readonly clock?: Clock;
+  /** Where lines go; standard output unless said. */
+  readonly log?: Logger;
   /** Scheduled work; off where a test calls the sweeps itself. */
   readonly ticks?: boolean;
 }
 
 /** Connects, checks the keys, serves, and starts the scheduled work. */
 export async function startServer(config: Config, options: StartOptions): Promise<Running> {
-  const log = pino({
-    base: null,
-    redact: { paths: ['*.password', '*.passphrase', '*.token'], censor: '[hidden]' },
-  });
+  const log =
+    options.log ??
+    pino({
+      base: null,
+      redact: { paths: ['*.password', '*.passphrase', '*.token'], censor: '[hidden]' },
+    });
   const db = new Database(config.databaseUrl);
   const vault = new Vault(config.vaultKeys, config.fingerprintKey);
   let queue: Queue | null = null;

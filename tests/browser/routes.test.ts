@@ -1,0 +1,144 @@
+import { readFileSync } from 'node:fs';
+import { createRequire } from 'node:module';
+import type { Page } from 'playwright-core';
+import { beforeAll, describe, expect, test } from 'vitest';
+import { routes } from '../../src/app/routes.tsx';
+import { openWindow, signIn } from '../support/browser.ts';
+import { useDemo } from './demo.ts';
+import { lookAt, type PlaceToLook, placesToLook, scrollsSideways } from './places.ts';
+
+const demo = useDemo();
+const AXE = readFileSync(createRequire(import.meta.url).resolve('axe-core/axe.min.js'), 'utf8');
+
+let places: PlaceToLook[] = [];
+beforeAll(async () => {
+  await changeCrewNow();
+  places = await placesToLook(demo.running.services);
+});
+
+/** Puts a change of the crew network on its way, so that there is an entry sheet to look at. */
+async function changeCrewNow(): Promise<void> {
+  const { page, context } = await openWindow(demo.browser, demo.running.origin, {
+    viewport: { width: 1280, height: 900 },
+  });
+  await signIn(page, demo.person('Chief stew'));
+  const answer = await page.evaluate(async () => {
+    const session = await (await fetch('/api/session')).json();
+    const { vesselId } = session.memberships[0];
+    const { networks } = await (await fetch(`/api/vessels/${vesselId}/networks`)).json();
+    const crew = networks.find((network: { audience: string }) => network.audience === 'crew');
+    const done = await fetch(`/api/vessels/${vesselId}/networks/${crew.id}/rotations/now`, {
+      method: 'POST',
+      headers: {
+        'Content-Type': 'application/json',
+        'X-Quayword-CSRF': session.csrf,
+        'Idempotency-Key': crypto.randomUUID(),
+      },
+      body: JSON.stringify({ reason: 'routine' }),
+    });
+    return done.status;
+  });
+  expect(answer).toBe(201);
+  await context.close();
+}
+
+interface Finding {
+  rule: string;
+  impact: string | null;
+  where: string[];
+}
+
+/** WCAG 2.2 AA and below, as axe-core reads it. */
+async function axe(page: Page): Promise<Finding[]> {
+  // Through the debugger, because the page's own policy lets no script in but its own.
+  await page.evaluate(AXE);
+  return page.evaluate(async () => {
+    const { axe: reader } = window as unknown as {
+      axe: {
+        run(
+          context: Document,
+          options: object,
+        ): Promise<{ violations: { id: string; impact: string | null; nodes: { html: string }[] }[] }>;
+      };
+    };
+    const { violations } = await reader.run(document, {
+      runOnly: ['wcag2a', 'wcag2aa', 'wcag21a', 'wcag21aa', 'wcag22aa', 'best-practice'],
+    });
+    return violations.map(({ id, impact, nodes }) => ({
+      rule: id,
+      impact,
+      where: nodes.slice(0, 3).map(({ html }) => html.slice(0, 160)),
+    }));
+  });
+}
+
+/** Visits every place as the person it belongs to, one window a person. */
+async function everywhere(
+  options: Parameters<typeof openWindow>[2],
+  look: (page: Page, place: PlaceToLook) => Promise<void>,
+): Promise<void> {
+  for (const role of new Set(places.map((place) => place.role))) {
+    const { page, context, trouble } = await openWindow(demo.browser, demo.running.origin, options);
+    if (role) await signIn(page, demo.person(role));
+    for (const place of places.filter((one) => one.role === role)) {
+      await lookAt(page, place.path);
+      await look(page, place);
+    }
+    expect(trouble, `as ${role ?? 'nobody'}`).toEqual([]);
+    await context.close();
+  }
+}
+
+describe('every route', () => {
+  test.each(['light', 'dark'] as const)(
+    'has nothing for axe to find, %s theme',
+    async (theme) => {
+      const found: (Finding & { place: string })[] = [];
+      await everywhere({ viewport: { width: 1180, height: 820 }, theme }, async (page, place) => {
+        for (const finding of await axe(page)) found.push({ place: place.name, ...finding });
+      });
+      expect(found).toEqual([]);
+    },
+    120_000,
+  );
+
+  test('scrolls sideways nowhere at 320 px', async () => {
+    const wide: string[] = [];
+    await everywhere({ viewport: { width: 320, height: 640 } }, async (page, place) => {
+      if (await scrollsSideways(page)) wide.push(place.name);
+    });
+    expect(wide).toEqual([]);
+  }, 120_000);
+
+  test('R33: runs nothing that people’s text brings along, and breaks no policy', async () => {
+    const { services } = demo.running;
+    await services.db.transaction({ kind: 'system' }, async (tx) => {
+      const hostile = `<img src=x onerror="document.title='owned'">\u202Etxet`;
+      await services.db.run(tx, `UPDATE guests SET name = $hostile WHERE name = 'Livia Quaranta'`, {
+        hostile,
+      });
+      await services.db.run(tx, `UPDATE crew_members SET name = $hostile WHERE name = 'Bram Oyelaran'`, {
+        hostile,
+      });
+    });
+    await everywhere({ viewport: { width: 1180, height: 820 } }, async (page, place) => {
+      expect(await page.title(), place.name).not.toContain('owned');
+      expect(await page.locator('img[src="x"]').count(), place.name).toBe(0);
+    });
+  }, 120_000);
+
+  test('is looked at here: none is forgotten', () => {
+    const paths: string[] = [];
+    const walk = (nodes: typeof routes, above: string) => {
+      for (const node of nodes) {
+        const here = node.path ? `${above}/${node.path}` : above;
+        if (node.lazy && (node.index || (node.path && !node.children))) paths.push(here || '/');
+        if (node.children) walk(node.children, here);
+      }
+    };
+    walk(routes, '');
+    const pattern = (path: string) => new RegExp(`^${path.replace(/:\w+/g, '[^/#]+')}(#.*)?$`);
+    const missing = paths.filter((path) => !places.some((place) => pattern(path).test(place.path)));
+    expect(missing).toEqual([]);
+  });
+});
