@@ -16,6 +16,8 @@ export const logFilter = z.strictObject({
     .trim()
     .min(2, 'Give at least two letters of the name')
     .max(SEARCH_MAX, `Keep it to ${SEARCH_MAX} characters`)
+    // biome-ignore lint/suspicious/noControlCharactersInRegex: the rule is about control characters
+    .refine((text) => !/[\u0000-\u001f\u007f]/.test(text), 'Leave out line breaks and control characters')
     .optional(),
   from: instant.optional(),
   to: instant.optional(),
