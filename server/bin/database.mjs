@@ -1,4 +1,4 @@
-import { createHash, randomUUID } from 'node:crypto';
+import { randomUUID } from 'node:crypto';
 import {
   chmodSync,
   chownSync,
@@ -126,15 +126,17 @@ function alive(pid) {
   }
 }
 
-/** The data folder: below `dir`, or in /var/lib when the database's user may not walk to `dir` (a clone below /root). */
+/**
+ * The data folder: below `dir`, or in /var/lib when the database's user may not walk to `dir` (a clone below /root).
+ * Its name there is kept in `dir`: a new clone in the place of an old one has other keys and begins with no data.
+ */
 function dataFolder(dir, { user, reaches }, log) {
   if (!user) return path.join(dir, 'pg');
   chmodSync(dir, 0o711);
   if (reaches(dir)) return path.join(dir, 'pg');
-  const elsewhere = path.join(
-    '/var/lib/quayword',
-    createHash('sha256').update(dir).digest('hex').slice(0, 12),
-  );
+  const note = path.join(dir, 'pg.folder');
+  if (!existsSync(note)) writeFileSync(note, `/var/lib/quayword/${randomUUID()}\n`);
+  const elsewhere = readFileSync(note, 'utf8').trim();
   mkdirSync(elsewhere, { recursive: true, mode: 0o711 });
   log(`The database's user may not enter ${dir}, so the database lies in ${elsewhere}.`);
   return path.join(elsewhere, 'pg');

@@ -1,3 +1,4 @@
+import { existsSync } from 'node:fs';
 import path from 'node:path';
 import { databaseUp } from './database.mjs';
 import { keptSecrets, randomKey, randomPassword } from './secrets.mjs';
@@ -15,8 +16,16 @@ const SECRETS = {
 };
 const KEY_RINGS = ['SESSION_KEYS', 'VAULT_KEYS'];
 
-/** Secrets of this folder, made once; for development and the demo only. */
+/**
+ * Secrets of this folder, made once; for development and the demo only. Throws {@link SetUpError} where a database
+ * is left whose keys are gone: with new ones nothing in it could be opened.
+ */
 function developmentSecrets() {
+  const lost = !existsSync(path.join(DATA, 'secrets.json')) && existsSync(path.join(DATA, 'pg.port'));
+  if (lost)
+    throw new SetUpError(
+      `${path.join(DATA, 'secrets.json')} is gone, and without its keys the database beside it cannot be read. Restore that file, or remove the folder ${DATA} to begin anew.`,
+    );
   const makers = Object.fromEntries(Object.values(SECRETS).map((name) => [name, randomKey]));
   const { secrets } = keptSecrets(DATA, makers);
   return Object.fromEntries(
@@ -56,6 +65,8 @@ export function serverEnvironment({ ownerUrl, appUrl }, extra = {}) {
 /** Starts this folder's database, or uses the server named by DATABASE_URL. */
 export async function databaseForServer(log = say) {
   const theirs = process.env.DATABASE_URL;
+  // The keys come first: a start that broke off must not leave a database without them.
+  if (process.env.NODE_ENV !== 'production') developmentSecrets();
   if (!theirs) return databaseUp({ dir: DATA, name: 'quayword', log });
   const stop = async () => undefined;
   const appUrl = await theirServer(theirs, process.env.DATABASE_APP_URL);

@@ -1,4 +1,4 @@
-import { readdirSync } from 'node:fs';
+import { existsSync, readdirSync, renameSync } from 'node:fs';
 import path from 'node:path';
 import { createTransport } from 'nodemailer';
 import { afterAll, beforeAll, describe, expect, inject, test } from 'vitest';
@@ -160,6 +160,16 @@ describe('npm start', () => {
     await expect(fetch(`http://127.0.0.1:${port}/api/health`)).rejects.toThrow();
     await expect(fetch(`http://127.0.0.1:${port + 1}/`)).rejects.toThrow();
     expect(readdirSync(path.join(dir, 'pg'))).not.toContain('postmaster.pid');
+  });
+
+  test('says so when the keys of a database are gone, and makes no new ones (R24)', async () => {
+    const secrets = path.join(dir, 'secrets.json');
+    renameSync(secrets, `${secrets}.away`);
+    const lost = await started(['server/bin/start.mjs'], env).ended;
+    expect(lost.code).toBe(1);
+    expect(lost.out).toContain('Restore that file, or remove the folder');
+    expect(existsSync(secrets)).toBe(false);
+    renameSync(`${secrets}.away`, secrets);
   });
 
   test('ends everything and fails when the server ends by itself (R24)', async () => {
