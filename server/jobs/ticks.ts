@@ -1,7 +1,6 @@
 import { schedule } from 'node-cron';
 import { sweepAccounts } from '../auth/sweepAccounts.ts';
 import { checkpointLogs } from '../handovers/checkpoint.ts';
-import { sweepAccounts } from '../auth/sweepAccounts.ts';
 import { mailTransport, sweepMail } from '../mail/sendMail.ts';
 import { purgeRetired } from '../rotations/purge.ts';
 import { sweep } from '../rotations/sweep.ts';
@@ -16,7 +15,6 @@ const TICKS: Record<string, { cron: string; run: (services: Services) => Promise
   visits: { cron: '20 * * * * *', run: endVisits },
   checkpoints: { cron: '3 * * * *', run: checkpointLogs },
   retention: { cron: '17 * * * *', run: eraseGuests },
-  accounts: { cron: '23 * * * *', run: sweepAccounts },
   accounts: { cron: '23 * * * *', run: sweepAccounts },
   purge: { cron: '7 * * * *', run: purgeRetired },
 };
