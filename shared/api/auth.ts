@@ -247,10 +247,19 @@ export const listMembers = contract({
   response: z.strictObject({ members: z.array(memberView), invitations: z.array(openInvitationView) }),
 });
 
+/** Being trusted with the owner's network only adds to a role: alone it opens no page. */
+const rolesAboard = z
+  .array(vesselRole)
+  .max(6)
+  .refine(
+    (roles) => roles.length === 0 || roles.some((role) => role !== 'owner_keeper'),
+    "Choose another role as well: being trusted with the owner's network only adds to one",
+  );
+
 export const inviteBody = z.strictObject({
   email,
   name: nameText(NAME_MAX).optional(),
-  roles: z.array(vesselRole).min(1, 'Choose at least one role').max(6),
+  roles: rolesAboard.min(1, 'Choose at least one role'),
 });
 
 export const inviteMember = contract({
@@ -284,6 +293,6 @@ export const setRoles = contract({
   access: vessel('members.manage'),
   fresh: true,
   params: vesselParams.extend({ personId: id }),
-  body: z.strictObject({ roles: z.array(vesselRole).max(6), suspended: z.boolean() }),
+  body: z.strictObject({ roles: rolesAboard, suspended: z.boolean() }),
   response: 'empty',
 });

@@ -73,12 +73,12 @@ export const problem = z.strictObject({
 });
 export type Problem = z.infer<typeof problem>;
 
-/** Where a text is a person's or a thing's name: trimmed, no control characters. */
-export const nameText = (max: number) =>
+/** Where a text is a person's or a thing's name: trimmed, no control characters. `missing` is said of an empty one. */
+export const nameText = (max: number, missing = 'Give a name') =>
   z
     .string()
     .trim()
-    .min(1, 'Give a name')
+    .min(1, missing)
     .max(max, `Keep it to ${max} characters`)
     // biome-ignore lint/suspicious/noControlCharactersInRegex: the rule is about control characters
     .refine((text) => !/[\u0000-\u001f\u007f]/.test(text), 'Leave out line breaks and control characters');

@@ -84,13 +84,18 @@ export const readVesselSettings = contract({
 
 export const vesselBody = z.strictObject({
   name: nameText(NAME_MAX),
-  kind: nameText(60),
+  kind: nameText(60, 'Say what she is, such as motor yacht'),
   lengthM: z
     .number('Give the length in metres')
     .min(1, 'Give the length in metres')
     .max(400, 'Give the length in metres')
     .nullable(),
-  guestsMax: z.number('Give a whole number').int('Give a whole number').min(0).max(500).nullable(),
+  guestsMax: z
+    .number('Give a whole number')
+    .int('Give a whole number')
+    .min(0, 'Give a whole number from 0 to 500')
+    .max(500, 'Give a whole number from 0 to 500')
+    .nullable(),
   homePort: optionalText(NAME_MAX),
   ownerName: optionalText(NAME_MAX),
   lying: optionalText(NAME_MAX),
@@ -167,7 +172,11 @@ export const setCabins = contract({
   body: z.strictObject({
     cabins: z
       .array(
-        z.strictObject({ id: id.optional(), deck: nameText(DECK_NAME_MAX), name: nameText(CABIN_NAME_MAX) }),
+        z.strictObject({
+          id: id.optional(),
+          deck: nameText(DECK_NAME_MAX, 'Give the deck'),
+          name: nameText(CABIN_NAME_MAX),
+        }),
       )
       .max(CABINS_MAX),
   }),
@@ -198,7 +207,7 @@ export const setAccessPoints = contract({
 /** What a dealer says of a vessel it begins to look after; the rest is for her captain to fill in. */
 export const newVesselBody = z.strictObject({
   name: nameText(NAME_MAX),
-  kind: nameText(60),
+  kind: nameText(60, 'Say what she is, such as motor yacht'),
   homePort: optionalText(NAME_MAX),
   /** Ship's time as an IANA name. */
   zone: z.string().min(1, "Choose the zone of ship's time").max(64),

@@ -1,4 +1,4 @@
-import type { RouteObject } from 'react-router-dom';
+import { type RouteObject, replace } from 'react-router-dom';
 import { FirstLoad } from './FirstLoad.tsx';
 import { Root } from './Root.tsx';
 import { NotFound, RouteError } from './RouteError.tsx';
@@ -21,6 +21,32 @@ const vesselPages: RouteObject[] = [
     },
   },
   {
+    path: 'networks',
+    lazy: async () => {
+      const { NetworksPage, networksLoader } = await import('../pages/NetworksPage.tsx');
+      return { Component: NetworksPage, loader: networksLoader };
+    },
+  },
+  {
+    path: 'networks/:networkId',
+    lazy: async () => {
+      const { NetworkPage, networkLoader } = await import('../pages/NetworkPage.tsx');
+      return { Component: NetworkPage, loader: networkLoader };
+    },
+  },
+  {
+    path: 'entry/:rotationId',
+    lazy: async () => {
+      const { EntrySheetPage, entrySheetLoader } = await import('../pages/EntrySheetPage.tsx');
+      return { Component: EntrySheetPage, loader: entrySheetLoader };
+    },
+  },
+  // Where the mail about a change leads.
+  {
+    path: 'changes/:rotationId',
+    loader: ({ params }) => replace(`/vessels/${params.vesselId}/entry/${params.rotationId}`),
+  },
+  {
     path: 'crew',
     lazy: async () => {
       const { CrewPage, crewLoader } = await import('../pages/CrewPage.tsx');
@@ -41,6 +67,13 @@ const vesselPages: RouteObject[] = [
       return { Component: LogPage, loader: logLoader };
     },
   },
+  {
+    path: 'settings',
+    lazy: async () => {
+      const { SettingsPage, settingsLoader } = await import('../pages/SettingsPage.tsx');
+      return { Component: SettingsPage, loader: settingsLoader };
+    },
+  },
 ];
 
 const fleetPages: RouteObject[] = [
@@ -49,6 +82,13 @@ const fleetPages: RouteObject[] = [
     lazy: async () => {
       const { FleetPage, fleetLoader } = await import('../pages/FleetPage.tsx');
       return { Component: FleetPage, loader: fleetLoader };
+    },
+  },
+  {
+    path: 'vessels',
+    lazy: async () => {
+      const { FleetVesselsPage, fleetVesselsLoader } = await import('../pages/FleetVesselsPage.tsx');
+      return { Component: FleetVesselsPage, loader: fleetVesselsLoader };
     },
   },
   {
