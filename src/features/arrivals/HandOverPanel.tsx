@@ -59,8 +59,11 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
       }),
     onSuccess: async (answer, channel) => {
       await refresh();
-      if (answer.already) say(answer.sentence);
-      else undoable(answer.sentence, () => undo.mutate(answer.handoverId));
+      if (answer.already) say(<SafeText>{answer.sentence}</SafeText>);
+      else
+        undoable(<SafeText>{`${guestCalled(guest)}: ${answer.sentence}`}</SafeText>, () =>
+          undo.mutate(answer.handoverId),
+        );
       if (channel === 'card') onServed(guest.id);
     },
   });

@@ -47,7 +47,7 @@ export function PreviewTable({ rows, cabins, zone, errorOf, onChange, onDrop }: 
     >
       {rows.map((row, index) => (
         <tr key={row.line}>
-          <Td className="text-soft">{row.line}</Td>
+          <Td className="align-middle text-soft">{row.line}</Td>
           <Td className="min-w-48">
             <input
               className={BOX}
@@ -110,7 +110,7 @@ export function PreviewTable({ rows, cabins, zone, errorOf, onChange, onDrop }: 
               />
             </label>
           </Td>
-          <Td className="text-sm text-soft">{stay(row) || "the party's times"}</Td>
+          <Td className="align-middle text-sm text-soft">{stay(row) || "the party's times"}</Td>
           <Td>
             <button
               type="button"
