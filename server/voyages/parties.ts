@@ -19,27 +19,15 @@ const PARTIES = `SELECT p.id, p.name, p.arrives_at, p.leaves_at, p.ashore_at,
 const BACK_MS = 14 * 86_400_000;
 const AHEAD_MS = 60 * 86_400_000;
 
-/** Parties around now and the one asked for, earliest arrival first. */
-export async function partiesAround(
-  services: Services,
-  tx: Tx,
-  vesselId: string,
-  now: Date,
-  asked: string | null,
-): Promise<PartyRecord[]> {
-  return services.db.rows<PartyRecord>(
-    tx,
-    `${PARTIES} WHERE p.vessel_id = $vessel
-       AND (p.id = $asked::uuid OR (p.leaves_at > $since AND p.arrives_at < $until))
-     ORDER BY p.arrives_at, p.id LIMIT 60`,
-    {
-      vessel: vesselId,
-      asked,
-      since: new Date(now.getTime() - BACK_MS),
-      until: new Date(now.getTime() + AHEAD_MS),
-    },
-  );
-}
+/** Parties around now and the one asked for, earliest arrival first; binds of {@link aroundNow}. */
+export const PARTIES_AROUND = `${PARTIES} WHERE p.vessel_id = $vessel
+  AND (p.id = $asked::uuid OR (p.leaves_at > $since AND p.arrives_at < $until))
+ORDER BY p.arrives_at, p.id LIMIT 60`;
+
+export const aroundNow = (now: Date) => ({
+  since: new Date(now.getTime() - BACK_MS),
+  until: new Date(now.getTime() + AHEAD_MS),
+});
 
 /** The party aboard; between two, the next; when none is to come, the last. */
 export function partyOfNow(parties: readonly PartyRecord[], now: Date): PartyRecord | null {
