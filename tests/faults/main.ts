@@ -7,7 +7,7 @@ import { migrate } from '../../server/db/migrate.ts';
 import { Vault } from '../../server/db/vault.ts';
 import type { Services } from '../../server/services.ts';
 import { scratchDatabase } from '../support/scratchDatabase.ts';
-import { tryFault } from '../support/seaTrial.ts';
+import { tryFault, tryPurgeFault } from '../support/seaTrial.ts';
 
 /**
  * `npm run faults`: ends a server by SIGKILL at each named step of a change, once early and once later, lets
@@ -15,7 +15,7 @@ import { tryFault } from '../support/seaTrial.ts';
  * an error, so that none is forgotten when the code changes.
  */
 const NETWORKS = 8;
-/** Claim, generate, store with log, commit answered, hand-out commit, begun, set, observed and in force, told. */
+/** Claim, generate, store with log, commit answered, hand-out commit, begun, set, observed and in force, told, forgotten. */
 const POINTS = [
   'S1',
   'S2',
@@ -31,6 +31,7 @@ const POINTS = [
   'S9:9',
   'S10',
   'S10:6',
+  'S12',
 ];
 
 const key = () => randomBytes(32).toString('base64');
@@ -64,7 +65,9 @@ try {
   try {
     await checkKeys(db, vault);
     for (const point of POINTS) {
-      const verdict = await tryFault(services, point, NETWORKS);
+      const verdict = await (point === 'S12'
+        ? tryPurgeFault(services, NETWORKS)
+        : tryFault(services, point, NETWORKS));
       tried += 1;
       lost += verdict.lost.length;
       lockedOut += verdict.lockedOut.length;

@@ -243,3 +243,57 @@ export async function tryFault(
   const after = await judge(services, ids);
   return { lost: after.lost, lockedOut: [...between.lockedOut, ...after.lockedOut], fired };
 }
+
+/** The last step of all: a server ends itself while it forgets retired secrets, and the next one forgets them. */
+export async function tryPurgeFault(
+  services: Services,
+  networks: number,
+): Promise<Verdict & { fired: boolean }> {
+  const ids = await layDueChanges(services, networks);
+  const env = childEnv(services.config);
+  const before = startServerProcess(env);
+  await until(
+    90,
+    'the changes are in force',
+    async () => (await countIn(services, ids, 'live')) === ids.length,
+  );
+  before.process.kill('SIGKILL');
+  await before.ended;
+  await services.db.transaction({ kind: 'system' }, (tx) =>
+    services.db.run(
+      tx,
+      `UPDATE passphrases SET retired_at = retired_at - interval '8 days' WHERE retired_at IS NOT NULL
+       AND network_id IN (SELECT network_id FROM rotations WHERE id = ANY($ids::uuid[]))`,
+      { ids },
+    ),
+  );
+  const kept = async () => {
+    const rows = await services.db.transaction({ kind: 'system' }, (tx) =>
+      services.db.rows<{ retired: boolean; marked: boolean }>(
+        tx,
+        `SELECT p.retired_at IS NOT NULL AS retired, p.purged_at IS NOT NULL AS marked FROM passphrases p
+         JOIN passphrase_secrets s ON s.passphrase_id = p.id
+         JOIN rotations r ON r.network_id = p.network_id AND r.id = ANY($ids::uuid[])
+         WHERE s.sealed IS NOT NULL`,
+        { ids },
+      ),
+    );
+    return {
+      retired: rows.filter((row) => row.retired).length,
+      torn: rows.filter((row) => row.marked).length,
+    };
+  };
+  const first = startServerProcess(env, 'S12');
+  await until(60, 'S12 is reached', async () => first.isOver() || (await kept()).retired === 0);
+  const fired = first.isOver();
+  if (!fired) first.process.kill('SIGKILL');
+  await first.ended;
+  const between = await kept();
+  const second = startServerProcess(env);
+  await until(60, 'retired secrets are forgotten', async () => (await kept()).retired === 0);
+  second.process.kill('SIGKILL');
+  await second.ended;
+  const after = await judge(services, ids);
+  const torn = between.torn > 0 ? [`${between.torn} secrets marked as forgotten but kept`] : [];
+  return { lost: [...after.lost, ...torn], lockedOut: after.lockedOut, fired };
+}
