@@ -12,12 +12,15 @@ interface TableProps {
   className?: string;
 }
 
-/** A table with hairlines that scrolls sideways in its own frame when it must, never the page. */
+/**
+ * A table with hairlines that scrolls sideways in its own frame when it must, never the page: `relative`, so that
+ * words for screen readers inside it are cut off with it.
+ */
 export function Table({ caption, captionShown, head, children, className }: TableProps) {
   const id = useId();
   return (
     // biome-ignore lint/a11y/noNoninteractiveTabindex: a frame that scrolls must be reachable by keyboard
-    <section className={cx('overflow-x-auto', className)} tabIndex={0} aria-labelledby={id}>
+    <section className={cx('relative overflow-x-auto', className)} tabIndex={0} aria-labelledby={id}>
       <table className="w-full border-collapse text-base">
         <caption id={id} className={captionShown ? 'pb-2 text-left text-sm text-soft' : 'sr-only'}>
           {caption}

@@ -26,7 +26,7 @@ export function GuestList({ guests, zone, selected, onSelect, label, visitors }:
       {groups.map(({ deck, guests: onDeck }) => (
         <div key={deck}>
           {deck ? (
-            <h3 className="border-b border-rule pb-1.5 text-sm font-medium text-soft">{deck}</h3>
+            <h2 className="border-b border-rule pb-1.5 text-sm font-medium text-soft">{deck}</h2>
           ) : null}
           <ul className="m-0 list-none p-0">
             {onDeck.map((guest, index) => (

@@ -10,6 +10,7 @@ import { plotAxis, plotX, swarm } from './plotLayout.ts';
 
 const ROW = 66;
 const RADIUS = 5;
+const TARGET = 12;
 
 /** The width of an element, in pixels, as it changes. */
 function useWidth() {
@@ -48,12 +49,12 @@ export function AgePlot({ dots }: { dots: readonly FleetDot[] }) {
   const doublings = Array.from({ length: Math.log2(axis.end) }, (_, index) => 2 ** (index + 1));
   const limitX = plotX(axis, 1);
   const narrow = width < 420;
-  const past = dots.filter((dot) => dot.ratio > 1).length;
+  const pastLimit = dots.filter((dot) => dot.ratio > 1).length;
   return (
     <figure className="m-0 grid grid-cols-1 gap-x-6 sm:grid-cols-[7rem_1fr]">
       <figcaption className="sr-only">
-        The age of each of {dots.length} networks against its own limit; {past} are past it. The table below
-        has the same figures.
+        The age of each of {dots.length} networks against its own limit; {pastLimit} are past it. The table
+        below has the same figures.
       </figcaption>
       <div className="hidden sm:block" style={{ paddingTop: 12 }}>
         {AUDIENCES.map((audience) => (
@@ -65,13 +66,23 @@ export function AgePlot({ dots }: { dots: readonly FleetDot[] }) {
       <div ref={element} className="relative min-w-0 pt-3">
         {width > 0
           ? AUDIENCES.map((audience) => {
-              const placed = swarm(
-                dots.filter((dot) => dot.audience === audience),
-                (dot) => Math.min(width - RADIUS - 1, Math.max(RADIUS + 1, plotX(axis, dot.ratio))),
+              const mine = dots.filter((dot) => dot.audience === audience);
+              const xOf = (edge: number) => (dot: FleetDot) =>
+                Math.min(width - edge, Math.max(edge, plotX(axis, dot.ratio)));
+              const within = swarm(
+                mine.filter((dot) => dot.ratio <= 1),
+                xOf(RADIUS + 1),
                 RADIUS,
                 ROW - 4,
               );
-              const worst = placed.reduce<(typeof placed)[number] | null>(
+              // Marks that can be pressed keep a finger's distance (WCAG 2.2, 2.5.8: 24 px).
+              const past = swarm(
+                mine.filter((dot) => dot.ratio > 1),
+                xOf(TARGET),
+                TARGET,
+                ROW - 4,
+              );
+              const worst = past.reduce<(typeof past)[number] | null>(
                 (top, one) => (one.item.ratio > Math.max(1, top?.item.ratio ?? 0) ? one : top),
                 null,
               );
@@ -82,35 +93,31 @@ export function AgePlot({ dots }: { dots: readonly FleetDot[] }) {
                     <Flag audience={audience} />
                   </span>
                   <svg width={width} height={ROW} aria-hidden="true" className="absolute inset-0">
-                    {placed
-                      .filter(({ item }) => item.ratio <= 1)
-                      .map(({ item, x, y }) => (
-                        <circle
-                          key={item.networkId}
-                          cx={x}
-                          cy={ROW / 2 + y}
-                          r={RADIUS}
-                          className="fill-paper stroke-ink"
-                          strokeWidth={1}
-                        >
-                          <title>{dotWords(item)}</title>
-                        </circle>
-                      ))}
-                  </svg>
-                  {placed
-                    .filter(({ item }) => item.ratio > 1)
-                    .map(({ item, x, y }) => (
-                      <Link
+                    {within.map(({ item, x, y }) => (
+                      <circle
                         key={item.networkId}
-                        to={`/fleet/vessels/${item.vesselId}`}
-                        title={dotWords(item)}
-                        aria-label={dotWords(item)}
-                        className="absolute grid size-6 place-items-center rounded-full"
-                        style={{ left: x - 12, top: ROW / 2 + y - 12 }}
+                        cx={x}
+                        cy={ROW / 2 + y}
+                        r={RADIUS}
+                        className="fill-paper stroke-ink"
+                        strokeWidth={1}
                       >
-                        <span className="size-[11px] rounded-full bg-magenta" />
-                      </Link>
+                        <title>{dotWords(item)}</title>
+                      </circle>
                     ))}
+                  </svg>
+                  {past.map(({ item, x, y }) => (
+                    <Link
+                      key={item.networkId}
+                      to={`/fleet/vessels/${item.vesselId}`}
+                      title={dotWords(item)}
+                      aria-label={dotWords(item)}
+                      className="absolute grid size-6 place-items-center rounded-full"
+                      style={{ left: x - 12, top: ROW / 2 + y - 12 }}
+                    >
+                      <span className="size-[11px] rounded-full bg-magenta" />
+                    </Link>
+                  ))}
                   {worst ? (
                     <span
                       aria-hidden="true"
