@@ -89,13 +89,13 @@ describe('what a spreadsheet writes is what is read, letter by letter', () => {
   test('any octets at all give a list or a clear refusal, and quickly (R36, R38)', () => {
     fc.assert(
       fc.property(fc.uint8Array({ maxLength: 4000 }), (octets) => {
-        const began = performance.now();
+        const before = process.cpuUsage();
         try {
           readGuestList(decodeUpload(Buffer.from(octets)).text, NO_BOAT);
         } catch (error) {
           expect(error).toMatchObject({ code: 'invalid' });
         }
-        expect(performance.now() - began).toBeLessThan(1000);
+        expect(process.cpuUsage(before).user / 1000).toBeLessThan(1000);
       }),
       { numRuns: 300 },
     );
@@ -108,13 +108,13 @@ describe('what a spreadsheet writes is what is read, letter by letter', () => {
     ['figures', '1'.repeat(50_000)],
     ['dots', '14.'.repeat(16_000)],
     ['letters', 'a'.repeat(50_000)],
-  ])('R36: a cell of 50,000 %s is put aside in less than a second', (_what, cell) => {
-    const began = performance.now();
+  ])('R36: a cell of 50,000 %s is put aside in less than a second of processor time', (_what, cell) => {
+    const before = process.cpuUsage();
     for (const heading of ['Name', 'Cabin', 'Language', 'Under 16', 'Age', 'From', 'Until']) {
       const head = heading === 'Name' ? 'Name' : `Name;${heading}`;
       const line = heading === 'Name' ? cell : `Ben Vela;${cell}`;
       readGuestList(`${head}\n${line}\nSigrun Brandvold;\n`, NO_BOAT);
     }
-    expect(performance.now() - began).toBeLessThan(1000);
+    expect(process.cpuUsage(before).user / 1000).toBeLessThan(1000);
   });
 });

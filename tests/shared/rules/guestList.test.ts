@@ -318,9 +318,10 @@ describe('a wrong line costs only itself', () => {
     ['one long name', `Name\n${'a'.repeat(1_000_000)}`],
     ['digits as a date', `Name,From\nAnna,${'1/'.repeat(400_000)}`],
   ])('%s in their hundred thousands are read in a moment (R36)', (_name, text) => {
-    const started = performance.now();
+    // Processor time: what else runs on the machine is not the reader's doing.
+    const before = process.cpuUsage();
     readGuestList(text, ABOARD);
-    expect(performance.now() - started).toBeLessThan(250);
+    expect(process.cpuUsage(before).user / 1000).toBeLessThan(250);
   });
 });
 
