@@ -139,8 +139,9 @@ async function change(method: Method, path: string, options: Options): Promise<R
 }
 
 async function json<T>(response: Response): Promise<T> {
-  if (response.status === 204) return undefined as T;
-  return (await response.json()) as T;
+  const text = await response.text();
+  // Something made (201) may be answered without content, as 204 always is (RFC 9110 sections 15.3.2 and 15.3.5).
+  return (text === '' ? undefined : JSON.parse(text)) as T;
 }
 
 /** Reads JSON. Throws `ApiError` on a refusal, `AwayError` when nobody answers. */
