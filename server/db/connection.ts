@@ -1,4 +1,7 @@
-import { QueryTypes, Sequelize, type Transaction } from 'sequelize';
+import { AsyncLocalStorage } from 'node:async_hooks';
+import type { Client, QueryConfig, QueryResult } from 'pg';
+import { QueryTypes, Sequelize, Transaction } from 'sequelize';
+import { databaseError, statement, values } from './statement.ts';
 
 export type Tx = Transaction;
 export type Row = Record<string, unknown>;
@@ -14,10 +17,31 @@ export type Scope =
   | { readonly kind: 'system' }
   | { readonly kind: 'none' };
 
+export interface DatabaseOptions {
+  readonly poolMax?: number;
+  /** Throws where a transaction is opened inside another, which with a small pool waits for itself. For tests. */
+  readonly refuseNested?: boolean;
+}
+
+export interface TransactionOptions {
+  /** The database itself then refuses every write: for safe methods. */
+  readonly readOnly?: boolean;
+}
+
+/** A connection of the pool: the driver's client, lent to one transaction at a time. */
+interface Lent extends Client {
+  uuid?: string;
+}
+
+/** What Sequelize keeps on its transactions besides what it declares. */
+type Held = Transaction & { readonly id: string; connection?: Lent; finished?: 'commit' | 'rollback' };
+
 export class Database {
   readonly sequelize: Sequelize;
+  private readonly inside: AsyncLocalStorage<true> | null;
 
-  constructor(url: string, options: { poolMax?: number } = {}) {
+  constructor(url: string, options: DatabaseOptions = {}) {
+    this.inside = options.refuseNested ? new AsyncLocalStorage() : null;
     this.sequelize = new Sequelize(url, {
       dialect: 'postgres',
       logging: false,
@@ -30,19 +54,60 @@ export class Database {
       define: { underscored: true, timestamps: false, freezeTableName: true },
       minifyAliases: false,
     });
-  }
-
-  /** Runs `work` in one transaction inside a scope. The scope's settings end with the transaction. */
-  async transaction<T>(scope: Scope, work: (tx: Tx) => Promise<T>): Promise<T> {
-    return this.sequelize.transaction(async (tx) => {
-      await setScope(this.sequelize, tx, scope);
-      return work(tx);
+    this.sequelize.addHook('afterConnect', (connection) => {
+      // Statements go out without waiting for the answers before them.
+      Object.assign(connection as object, { pipeline: true });
     });
   }
 
-  /** Rows of a select, with named `:replacements` sent as bound parameters `$name`. */
+  /** Runs `work` in one transaction inside a scope. The scope's settings end with the transaction. */
+  async transaction<T>(
+    scope: Scope,
+    work: (tx: Tx) => Promise<T>,
+    options: TransactionOptions = {},
+  ): Promise<T> {
+    if (this.inside === null) return this.inTransaction(scope, work, options);
+    if (this.inside.getStore())
+      throw new Error('A transaction was opened inside another. Hand its tx on instead.');
+    return this.inside.run(true, () => this.inTransaction(scope, work, options));
+  }
+
+  private async inTransaction<T>(
+    scope: Scope,
+    work: (tx: Tx) => Promise<T>,
+    { readOnly }: TransactionOptions,
+  ): Promise<T> {
+    const tx = new Transaction(this.sequelize, {}) as Held;
+    const connections = this.sequelize.connectionManager;
+    const client = (await connections.getConnection({ type: 'write', useMaster: true })) as Lent;
+    client.uuid = tx.id;
+    tx.connection = client;
+    let sound = false;
+    try {
+      // Goes out together with the first statement; that one fails too where this does.
+      const begun = send(client, { text: readOnly ? 'BEGIN READ ONLY' : 'BEGIN' });
+      begun.catch(() => undefined);
+      await setScope(this.sequelize, tx, scope);
+      const result = await work(tx);
+      await begun;
+      tx.finished = 'commit';
+      const { command } = await send(client, { text: 'COMMIT' });
+      sound = true;
+      if (command !== 'COMMIT')
+        throw new Error('A statement had failed and was passed over, so the transaction was taken back');
+      return result;
+    } catch (error) {
+      if (!sound) sound = await rolledBack(client, tx);
+      throw error;
+    } finally {
+      client.uuid = undefined;
+      await giveBack(connections, client, sound);
+    }
+  }
+
+  /** Rows of a select; `$name` in the text stands for a bound value. */
   async rows<T extends object = Row>(tx: Tx, sql: string, bind: Record<string, unknown> = {}): Promise<T[]> {
-    return this.sequelize.query<T>(sql, { type: QueryTypes.SELECT, bind, transaction: tx });
+    return this.run<T>(tx, sql, bind);
   }
 
   async row<T extends object = Row>(
@@ -50,18 +115,56 @@ export class Database {
     sql: string,
     bind: Record<string, unknown> = {},
   ): Promise<T | null> {
-    return (await this.rows<T>(tx, sql, bind))[0] ?? null;
+    return (await this.run<T>(tx, sql, bind))[0] ?? null;
   }
 
   /** Runs a statement; answers the rows of a RETURNING clause. */
   async run<T extends object = Row>(tx: Tx, sql: string, bind: Record<string, unknown> = {}): Promise<T[]> {
-    const [rows] = await this.sequelize.query(sql, { bind, transaction: tx });
-    return rows as T[];
+    const { connection, finished } = tx as Held;
+    if (!connection || finished) throw new Error('This transaction is over; its statements belong inside');
+    const known = statement(sql);
+    const result = await send(connection, { text: known.text, values: values(known, bind) });
+    return result.rows as T[];
   }
 
   async close(): Promise<void> {
     await this.sequelize.close();
   }
+}
+
+async function send(client: Lent, query: QueryConfig): Promise<QueryResult> {
+  try {
+    return await client.query(query);
+  } catch (error) {
+    throw databaseError(error);
+  }
+}
+
+/** Whether the connection can be lent again: false when it does not even take a rollback. */
+async function rolledBack(client: Lent, tx: Held): Promise<boolean> {
+  const committing = tx.finished === 'commit';
+  tx.finished = 'rollback';
+  // After a COMMIT whose answer was lost nobody knows what state the connection is in.
+  if (committing) return false;
+  try {
+    await client.query('ROLLBACK');
+    return true;
+  } catch {
+    return false;
+  }
+}
+
+async function giveBack(
+  connections: Sequelize['connectionManager'],
+  client: Lent,
+  sound: boolean,
+): Promise<void> {
+  const pool = connections as unknown as {
+    releaseConnection(client: Lent): void;
+    destroyConnection(client: Lent): Promise<void>;
+  };
+  if (sound) pool.releaseConnection(client);
+  else await pool.destroyConnection(client).catch(() => undefined);
 }
 
 export async function setScope(sequelize: Sequelize, tx: Tx, scope: Scope): Promise<void> {

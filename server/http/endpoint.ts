@@ -13,7 +13,8 @@ import type { Services } from '../services.ts';
 import { idempotent } from './idempotency.ts';
 import { requireSameOrigin } from './origin.ts';
 import type { AnyContract, FileReply, Presented } from './reply.ts';
-import { type Actor, FRESH_MS, readSessionCookie, resolveActor } from './session.ts';
+import { told } from './requestLog.ts';
+import { type Actor, FRESH_MS, readSessionCookie, resolveActor, seenLongAgo, writeSeen } from './session.ts';
 import { parseBody, parseParams, parseQuery } from './validate.ts';
 
 type Output<T> = T extends z.ZodType ? z.output<T> : undefined;
@@ -75,15 +76,19 @@ export function endpoint<C extends AnyContract, P = undefined>(
     contract,
     serve: async (services, request, response) => {
       const { db, config, clock } = services;
+      const known = told(response);
+      known.route = contract.name;
       const sessionId = readSessionCookie(config, request);
       if (!sessionId) throw signInFirst();
       requireSameOrigin(config, request, sessionId);
       const vesselId = vesselOf(contract, request);
+      known.vesselId = vesselId;
       const place = { vesselId, fleet };
 
       const admit = async (tx: Tx) => {
         const actor = await resolveActor(services, tx, sessionId, place);
         if (!actor) throw signInFirst();
+        known.personId = actor.personId;
         admitActor(services, contract, actor);
         await admitAudience(services, tx, contract, actor, request);
         return actor;
@@ -100,15 +105,24 @@ export function endpoint<C extends AnyContract, P = undefined>(
 
       let prepared = undefined as P;
       if (handlers.prepare) {
-        const actor = await db.transaction({ kind: 'none' }, admit);
+        const actor = await db.transaction({ kind: 'none' }, admit, { readOnly: true });
         prepared = await handlers.prepare({ ...base(), actor });
       }
-      const reply = await db.transaction({ kind: 'none' }, async (tx) => {
-        const actor = await admit(tx);
-        const context: Context<C, P> = { ...base(), tx, actor, prepared };
-        const work = async () => present(contract, await handlers.handle(context));
-        return contract.method === 'GET' ? work() : idempotent(context, contract, work);
-      });
+      const safe = contract.method === 'GET';
+      const { reply, seen } = await db.transaction(
+        { kind: 'none' },
+        async (tx) => {
+          const actor = await admit(tx);
+          const context: Context<C, P> = { ...base(), tx, actor, prepared };
+          const stale = seenLongAgo(actor, context.now);
+          const work = async () => present(contract, await handlers.handle(context));
+          if (safe) return { reply: await work(), seen: stale ? actor : null };
+          if (stale) await writeSeen(services, tx, actor, context.now);
+          return { reply: await idempotent(context, contract, work), seen: null };
+        },
+        { readOnly: safe },
+      );
+      if (seen) await db.transaction({ kind: 'none' }, (tx) => writeSeen(services, tx, seen, clock.now()));
       send(contract, response, reply);
     },
   };
@@ -125,6 +139,7 @@ export function openEndpoint<C extends AnyContract, P = undefined>(
   return {
     contract,
     serve: async (services, request, response) => {
+      told(response).route = contract.name;
       requireSameOrigin(services.config, request, null);
       const base: Base<C> = {
         services,

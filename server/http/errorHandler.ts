@@ -16,7 +16,7 @@ function known(error: unknown): AppError {
       cause: error,
     });
   const code = sqlState(error);
-  if (code !== null && /^(08|57P|53)/.test(code))
+  if (error instanceof DatabaseError && (code === null || /^(08|57P|53)/.test(code)))
     return new AppError('unavailable', AWAY, { retryAfter: 3, cause: error });
   if (code === '40001' || code === '40P01' || code === '55P03')
     return new AppError('conflict', 'Two changes met. Look again, then repeat yours.', { cause: error });
@@ -35,13 +35,13 @@ function known(error: unknown): AppError {
   );
 }
 
+/** The database's own five-letter code (PostgreSQL manual, appendix A); null where the connection broke instead. */
 function sqlState(error: unknown): string | null {
   if (!(error instanceof BaseError)) return null;
   const original: unknown =
     error instanceof DatabaseError ? error.original : 'original' in error ? error.original : null;
-  return original instanceof Error && 'code' in original && typeof original.code === 'string'
-    ? original.code
-    : null;
+  const code = original instanceof Error && 'code' in original ? original.code : null;
+  return typeof code === 'string' && /^(?=.*\d)[0-9A-Z]{5}$/.test(code) ? code : null;
 }
 
 /** What may be written down about an error: never its values, parameters or SQL. */

@@ -40,6 +40,8 @@ export interface Actor {
   /** True when a role used here asks for a second factor and this session has not given one. */
   readonly secondFactorMissing: boolean;
   readonly provedAt: Date;
+  /** The session's last request before this one, to the minute. */
+  readonly seenAt: Date;
 }
 
 const keyObjects = new WeakMap<Buffer, KeyObject>();
@@ -179,12 +181,6 @@ export async function resolveActor(
     },
   );
   if (!row) return null;
-  if (now.getTime() - row.last_seen_at.getTime() > 60_000) {
-    await services.db.run(tx, 'UPDATE sessions SET last_seen_at = $now WHERE id_hash = $hash', {
-      now,
-      hash: sessionHash,
-    });
-  }
   const asked = new Set(row.second_factor_roles);
   const used: readonly string[] = place.fleet && row.dealer_role ? [row.dealer_role] : row.roles;
   return {
@@ -201,5 +197,22 @@ export async function resolveActor(
     secondFactorEnrolled: row.totp_enrolled_at !== null,
     secondFactorMissing: row.second_factor_at === null && used.some((role) => asked.has(role)),
     provedAt: row.proved_at,
+    seenAt: row.last_seen_at,
   };
+}
+
+/** How coarsely a session's last request is kept, in milliseconds. */
+const SEEN_MS = 60_000;
+
+/** Whether the session's last request has to be written down again. */
+export const seenLongAgo = (actor: Actor, now: Date): boolean =>
+  now.getTime() - actor.seenAt.getTime() > SEEN_MS;
+
+/** Writes down that the session was used, from which its idle time counts. */
+export async function writeSeen(services: Services, tx: Tx, actor: Actor, now: Date): Promise<void> {
+  await services.db.run(
+    tx,
+    'UPDATE sessions SET last_seen_at = $now WHERE id_hash = $hash AND last_seen_at < $now',
+    { now, hash: actor.sessionHash },
+  );
 }

@@ -1,6 +1,6 @@
 import type { Request } from 'express';
 import type { z } from 'zod';
-import { AppError, notFound } from '../errors.ts';
+import { AppError, invalid, notFound } from '../errors.ts';
 import type { AnyContract } from './reply.ts';
 
 /** A path that cannot name anything of ours names nothing. */
@@ -23,6 +23,9 @@ export function parseBody(contract: AnyContract, request: Request): unknown {
 
 /** Every invalid field with what would be right, keyed by its path. */
 function check(schema: z.ZodType, value: unknown): unknown {
+  const unkept = pathOfUnkept(value);
+  if (unkept !== null)
+    throw invalid({ [unkept]: ['Leave out the zero character and broken letters; they cannot be kept'] });
   const parsed = schema.safeParse(value);
   if (parsed.success) return parsed.data;
   const errors: Record<string, string[]> = {};
@@ -40,3 +43,23 @@ function check(schema: z.ZodType, value: unknown): unknown {
     errors,
   });
 }
+
+/**
+ * Where a text or a field's name holds what the database can keep in no column: U+0000, or half of a surrogate pair
+ * (PostgreSQL manual 8.3 and 8.14.1). Null when there is nothing of the kind.
+ */
+function pathOfUnkept(value: unknown, path: readonly string[] = []): string | null {
+  if (typeof value === 'string') return kept(value) ? null : path.join('.') || 'body';
+  if (typeof value !== 'object' || value === null) return null;
+  if (path.length > DEEPEST) return path.slice(0, 4).join('.');
+  for (const [name, inner] of Object.entries(value)) {
+    if (!kept(name)) return path.join('.') || 'body';
+    const found = pathOfUnkept(inner, [...path, name]);
+    if (found !== null) return found;
+  }
+  return null;
+}
+
+/** No form of ours nests deeper than a few levels. */
+const DEEPEST = 16;
+const kept = (text: string): boolean => !text.includes('\0') && !/\p{Surrogate}/u.test(text);

@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { CSV_MAX_BYTES, CSV_MAX_ROWS, NAME_MAX } from '../rules/limits.ts';
+import { CSV_MAX_BYTES, CSV_MAX_ROWS, LIST_MAX_BYTES, NAME_MAX } from '../rules/limits.ts';
 import { id, instant, language, nameText, vesselParams } from './common.ts';
 import { contract, vessel } from './contract.ts';
 
@@ -134,6 +134,7 @@ export const previewList = contract({
   access: editing,
   // Not for a passphrase: a list that is only looked at is not kept for repeats either.
   secret: true,
+  bodyMax: LIST_MAX_BYTES,
   params: vesselParams,
   body: z
     .strictObject({
@@ -163,6 +164,7 @@ export const importList = contract({
   path: '/vessels/:vesselId/arrivals/import',
   summary: 'Add the confirmed lines of a list to a party, or to a new one',
   access: editing,
+  bodyMax: LIST_MAX_BYTES,
   params: vesselParams,
   body: z
     .strictObject({

@@ -34,6 +34,8 @@ export interface Contract<
   readonly fresh?: boolean;
   /** The response may carry a passphrase, so it is never kept for repeats of an idempotency key. */
   readonly secret?: boolean;
+  /** Largest request body, in bytes; JSON_MAX_BYTES unless said. */
+  readonly bodyMax?: number;
   readonly params?: P;
   readonly query?: Q;
   readonly body?: B;

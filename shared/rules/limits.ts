@@ -50,6 +50,8 @@ export const CSV_MAX_BYTES = 2 * 1024 * 1024;
 export const CSV_MAX_ROWS = 500;
 /** JSON request body, in bytes. */
 export const JSON_MAX_BYTES = 256 * 1024;
+/** JSON that carries a party list: base64 takes four characters for three bytes (RFC 4648 section 4), and a little around it. */
+export const LIST_MAX_BYTES = Math.ceil(CSV_MAX_BYTES / 3) * 4 + 1024;
 
 /** Rows of one page of a keyed list. */
 export const PAGE_DEFAULT = 50;

@@ -69,7 +69,7 @@ export function useApp(): TestApp {
       },
     });
     const log = pino({ base: null, level: 'debug' }, sink);
-    const db = new Database(appUrl, { poolMax: 8 });
+    const db = new Database(appUrl, { poolMax: 8, refuseNested: true });
     const vault = new Vault(config.vaultKeys, config.fingerprintKey);
     await checkKeys(db, vault);
     const queue = await startQueue(db, appUrl, () => undefined, { pollSeconds: 0.5 });
