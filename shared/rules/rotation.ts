@@ -147,6 +147,9 @@ export function toTry(rotation: Rotation, now: Date): readonly ('new' | 'old')[]
   switch (rotation.state) {
     case 'staged':
       return rotation.takesOver ? ['new', ...old] : old;
+    case 'needs_somebody':
+      // Somebody is waited for who never opened the sheet: nothing has left yet.
+      return rotation.handedOutAt === null && !rotation.takesOver ? old : ['new', ...old];
     case 'planned':
     case 'cancelled':
       return old;
