@@ -115,6 +115,69 @@ describe('a day aboard Tamarisk', () => {
     expect(trouble).toEqual([]);
     await context.close();
   }, 90_000);
+
+  test('the chief stew changes the crew network, the ETO enters it with a typing error first, the dealer sees the age', async () => {
+    const dealer = await start('Dealer, service desk', { width: 1440, height: 900 });
+    const tamarisk = dealer.page.getByRole('row', { name: /^Tamarisk/ });
+    await dealer.page.getByLabel('Search vessels').fill('Tamarisk');
+    await tamarisk.getByRole('cell', { name: '41', exact: true }).waitFor();
+    await shot(dealer.page, '05-fleet-before');
+
+    const stew = await start('Chief stew', { width: 1360, height: 900 });
+    await stew.page.getByRole('link', { name: 'Networks' }).click();
+    await stew.page.getByText('Tamarisk Crew is exposed').waitFor();
+    await shot(stew.page, '06-networks');
+    await stew.page
+      .getByRole('button', { name: /Change Tamarisk Crew now|Change now/ })
+      .last()
+      .click();
+    await stew.page.getByRole('button', { name: 'Change it now' }).click();
+    await stew.page.getByRole('button', { name: 'Close' }).last().click();
+    const before = await inForce('Tamarisk Crew');
+
+    const eto = await start('ETO', { width: 390, height: 844 });
+    await eto.page.getByRole('link', { name: 'Networks' }).click();
+    await eto.page
+      .getByRole('link', { name: /entry sheet/i })
+      .first()
+      .click();
+    await eto.page.getByRole('button', { name: /^Open the sheet/ }).click();
+    await eto.page.getByText('Hides itself in').waitFor();
+    await shot(eto.page, '07-entry-sheet');
+    const passphrase =
+      (
+        await eto.page.locator('section[aria-label="The passphrase"] [translate="no"]').first().textContent()
+      )?.replace(/\s/g, '') ?? '';
+    expect(passphrase).toMatch(/^[a-z]+(-[a-z]+){4,}$/);
+    expect(passphrase).not.toBe(before);
+    const box = eto.page.getByLabel(/^Type it back/);
+    await box.fill(`${passphrase.slice(0, -1)}`);
+    await eto.page.getByRole('button', { name: 'Confirm', exact: true }).click();
+    await eto.page.getByText('1 character shorter').waitFor();
+    await shot(eto.page, '08-typing-error');
+    expect(await inForce('Tamarisk Crew')).toBe(before);
+    for (let confirmed = 0; confirmed < 5; confirmed += 1) {
+      await box.fill(passphrase);
+      const answered = eto.page.waitForResponse((response) => response.url().endsWith('/confirm'));
+      await eto.page.getByRole('button', { name: 'Confirm', exact: true }).click();
+      expect((await answered).status()).toBe(200);
+      await box.waitFor({ state: confirmed < 4 ? 'visible' : 'detached' });
+      if (confirmed < 4) await expect.poll(() => box.inputValue()).toBe('');
+    }
+    await eto.page.getByText('has its new passphrase').waitFor();
+    await shot(eto.page, '09-in-force');
+    expect(await inForce('Tamarisk Crew')).toBe(passphrase);
+
+    await dealer.page.reload();
+    await tamarisk.getByRole('cell', { name: '0', exact: true }).nth(1).waitFor();
+    await shot(dealer.page, '10-fleet-after');
+    expect(await dealer.page.content()).not.toContain(passphrase);
+    for (const window of [dealer, stew, eto]) {
+      expect(window.trouble).toEqual([]);
+      await window.context.close();
+    }
+    expect(demo.logged()).not.toContain(passphrase);
+  }, 120_000);
 });
 
 async function start(
