@@ -164,8 +164,8 @@ function Meanwhile({ rotation, zone }: { rotation: RotationView; zone: string })
       {trying ? <p>{trying}</p> : null}
       {rotation.reportBy && rotation.state !== 'unknown' ? (
         <p className="text-soft">
-          Not confirmed by <DateTime at={rotation.reportBy} zone={zone} as="words" />, it counts as not yet
-          known.
+          Unless it is confirmed by <DateTime at={rotation.reportBy} zone={zone} as="words" />, it counts as
+          not yet known.
         </p>
       ) : null}
     </div>

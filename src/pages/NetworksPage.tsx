@@ -4,7 +4,7 @@ import { type LoaderFunctionArgs, useNavigate, useParams } from 'react-router-do
 import type { NetworkView } from '../../shared/api/networks.ts';
 import { hasStarted } from '../../shared/rules/hasStarted.ts';
 import { may } from '../../shared/rules/permissions.ts';
-import { Button } from '../components/Button.tsx';
+import { Button, ButtonLink } from '../components/Button.tsx';
 import { Page, Section } from '../components/Page.tsx';
 import { Empty, Loading, PageState } from '../components/PageState.tsx';
 import { Sentence } from '../components/Sentence.tsx';
@@ -13,6 +13,7 @@ import { NetworkRow } from '../features/networks/NetworkRow.tsx';
 import { NetworksSentence, worstOf } from '../features/networks/NetworksSentence.tsx';
 import { networksQuery } from '../features/networks/queries.ts';
 import { reasonLine } from '../features/networks/reasonWords.ts';
+import { awaitsEntry } from '../features/networks/words.ts';
 import { ChangeNowDialog } from '../features/rotations/ChangeNowDialog.tsx';
 import { PlanDialog } from '../features/rotations/PlanDialog.tsx';
 import { rotationsQuery, voyagesQuery } from '../features/rotations/queries.ts';
@@ -88,7 +89,14 @@ export function NetworksPage() {
                     voyages={calendar}
                     mayEnter={may(roles, 'rotation.enter')}
                     crossingUntil={crossingUntil}
-                    actions={<Actions network={network} primary={network === worst} onAsk={setAsked} />}
+                    actions={
+                      <Actions
+                        {...{ vesselId, network }}
+                        primary={network === worst}
+                        mayEnter={may(roles, 'rotation.enter')}
+                        onAsk={setAsked}
+                      />
+                    }
                   />
                 ))}
               </ul>
@@ -146,31 +154,47 @@ export function NetworksPage() {
   );
 }
 
-function Actions({
-  network,
-  primary,
-  onAsk,
-}: {
+interface ActionsProps {
+  vesselId: string;
   network: NetworkView;
+  /** The one that needs it. */
   primary: boolean;
+  mayEnter: boolean;
   onAsk: (asked: Asked) => void;
-}) {
-  if (!network.may.plan) return null;
-  const started = network.change !== null && hasStarted(network.change);
-  if (started) return <p className="text-sm text-soft">A change is under way.</p>;
+}
+
+/** What can be done with a network now: change or plan it, or go on with the change that is under way. */
+function Actions({ vesselId, network, primary, mayEnter, onAsk }: ActionsProps) {
+  const now = useNow();
+  const { change } = network;
+  const started = change !== null && hasStarted(change);
+  const entry = change !== null && (started || awaitsEntry(change, now));
   const called = `for ${network.ssid}`;
   return (
     <>
-      <Button
-        kind={primary ? 'primary' : 'secondary'}
-        aria-label={`Change now, ${called}`}
-        onClick={() => onAsk({ what: 'change', networkId: network.id })}
-      >
-        Change now
-      </Button>
-      <Button aria-label={`Plan, ${called}`} onClick={() => onAsk({ what: 'plan', networkId: network.id })}>
-        Plan
-      </Button>
+      {entry && mayEnter ? (
+        <ButtonLink
+          kind={primary ? 'primary' : 'secondary'}
+          to={`/vessels/${vesselId}/entry/${change.id}`}
+          aria-label={`Open the entry sheet, ${called}`}
+        >
+          Open the entry sheet
+        </ButtonLink>
+      ) : null}
+      {network.may.plan && !entry ? (
+        <Button
+          kind={primary ? 'primary' : 'secondary'}
+          aria-label={`Change now, ${called}`}
+          onClick={() => onAsk({ what: 'change', networkId: network.id })}
+        >
+          Change now
+        </Button>
+      ) : null}
+      {network.may.plan && !started ? (
+        <Button aria-label={`Plan, ${called}`} onClick={() => onAsk({ what: 'plan', networkId: network.id })}>
+          Plan
+        </Button>
+      ) : null}
     </>
   );
 }

@@ -8,7 +8,7 @@ import { SegmentProgress } from '../../components/SegmentProgress.tsx';
 import { Attention } from '../../components/Sentence.tsx';
 import { useNow } from '../../lib/clock.ts';
 import { isLate, type ReasonContext, reasonWords } from './reasonWords.ts';
-import { holdersWords, leakWords } from './words.ts';
+import { awaitsEntry, holdersWords, leakWords } from './words.ts';
 
 interface ChangeLinesProps {
   vesselId: string;
@@ -17,8 +17,6 @@ interface ChangeLinesProps {
   voyages: readonly VoyageView[];
   /** Whether the person may enter passphrases into access points. */
   mayEnter: boolean;
-  /** Leave the links out where they stand nearby. */
-  plain?: boolean;
 }
 
 /** When a network changes next and why, or how far the change under way is; then who holds it. */
@@ -81,12 +79,20 @@ function Next(props: ChangeLinesProps) {
     quiet: network.policy.quietHours.length > 0,
     voyages,
   };
+  const waiting = awaitsEntry(change, now);
   return (
     <>
       <p className="text-base font-semibold">
-        <DateTime at={change.dueAt} zone={zone} />
-        {change.state === 'staged' ? <span className="font-normal text-soft">, ready</span> : null}
+        {waiting ? (
+          'Ready to be entered'
+        ) : (
+          <>
+            <DateTime at={change.dueAt} zone={zone} />
+            {change.state === 'staged' ? <span className="font-normal text-soft">, ready</span> : null}
+          </>
+        )}
       </p>
+      {waiting && !props.mayEnter ? <p className="text-soft">The captain or the ETO enters it.</p> : null}
       {change.reasons.map((reason) => (
         <p key={reason.code}>
           {isLate(reason) ? (
@@ -127,17 +133,14 @@ function UnderWay({ change }: { change: RotationSummary }) {
   );
 }
 
-/** The way to the entry sheet for those who may use it; for the others, who can. */
-function SheetLink({ vesselId, change, mayEnter, plain }: ChangeLinesProps & { change: RotationSummary }) {
-  if (plain) return null;
+/** The way to an access point that runs something else; for a change under way, who can go on with it. */
+function SheetLink({ vesselId, change, mayEnter }: ChangeLinesProps & { change: RotationSummary }) {
   const drifted = change.state === 'drifted';
-  const wanted =
-    drifted || change.driver === 'by_hand' || change.state === 'needs_somebody' || change.state === 'unknown';
-  if (!wanted) return null;
+  if (!drifted && (mayEnter || change.driver !== 'by_hand')) return null;
   if (!mayEnter) return <span className="text-soft">The captain or the ETO enters it.</span>;
   return (
     <Link to={`/vessels/${vesselId}/entry/${change.id}`} className="text-deep underline underline-offset-4">
-      {drifted ? 'See which access points' : 'Open the entry sheet'}
+      See which access points
     </Link>
   );
 }

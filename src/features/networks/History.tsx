@@ -9,7 +9,7 @@ function stateOf({ liveAt, retiredAt, state }: Past): string {
   if (liveAt && !retiredAt) return state === 'drifted' ? 'In force, not the same everywhere' : 'In force';
   if (liveAt) return 'Retired';
   if (state === 'cancelled' || state === 'superseded' || retiredAt) return 'Never used';
-  return 'Being changed to, or ready';
+  return state === 'staged' ? 'Ready' : 'Being changed to';
 }
 
 /** The network's passphrases, newest first, without the passphrases themselves. */

@@ -32,9 +32,11 @@ export function NetworkRow({
 }: NetworkRowProps) {
   const { live, policy, carriesEquipment } = network;
   return (
-    <li className="grid grid-cols-[auto_1fr] items-center gap-x-5 gap-y-4 border-b border-rule py-5 md:grid-cols-[auto_1fr_11rem] xl:grid-cols-[auto_15rem_minmax(0,31rem)_minmax(14rem,1fr)_11rem] xl:gap-x-6">
-      <Flag audience={network.audience} size="large" word={false} />
-      <div className="min-w-0">
+    <li className="grid grid-cols-[auto_1fr] items-center gap-x-5 gap-y-4 border-b border-rule py-5 md:grid-cols-[auto_1fr_minmax(0,18rem)_9rem] xl:grid-cols-[auto_15rem_minmax(0,31rem)_minmax(14rem,1fr)_11rem] xl:gap-x-6">
+      <div className="md:col-start-1 md:row-start-1">
+        <Flag audience={network.audience} size="large" word={false} />
+      </div>
+      <div className="min-w-0 md:col-start-2 md:row-start-1">
         <h2 className="text-lg leading-snug font-semibold break-words">
           <Link
             to={`/vessels/${vesselId}/networks/${network.id}`}
@@ -46,18 +48,18 @@ export function NetworkRow({
         <p className="text-sm text-soft">{AUDIENCE_LINE[network.audience]}</p>
         {carriesEquipment ? <p className="text-sm">Carries equipment</p> : null}
       </div>
-      <div className="col-span-2 row-start-2 md:col-span-3 xl:col-span-1 xl:row-start-auto">
+      <div className="col-span-2 row-start-2 md:col-span-4 xl:col-span-1 xl:col-start-3 xl:row-start-1">
         {live ? (
           <AgeScale days={live.ageDays} limitDays={policy.ageLimitDays} />
         ) : (
           <p className="text-soft">No passphrase on record, so its age cannot be told.</p>
         )}
       </div>
-      <div className="col-span-2 text-sm md:col-span-3 xl:col-span-1">
+      <div className="col-span-2 text-sm md:col-span-1 md:col-start-3 md:row-start-1 xl:col-start-4">
         <ChangeLines {...{ vesselId, network, zone, voyages, mayEnter }} />
         {carriesEquipment ? <EquipmentLine crossingUntil={crossingUntil} zone={zone} /> : null}
       </div>
-      <div className="col-span-2 flex gap-2 *:grow md:col-span-1 md:col-start-3 md:row-start-1 md:flex-col xl:col-start-auto xl:row-start-auto">
+      <div className="col-span-2 flex gap-2 *:grow md:col-span-1 md:col-start-4 md:row-start-1 md:flex-col xl:col-start-5">
         {actions}
       </div>
     </li>

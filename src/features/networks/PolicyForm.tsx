@@ -118,7 +118,7 @@ export function PolicyForm({ vesselId, network, onClose }: PolicyFormProps) {
             onChange={(event) => setOnLeak(event.target.checked)}
           />
         </fieldset>
-        <div className="grid gap-4 sm:grid-cols-2">
+        <div className="flex max-w-md flex-col gap-4">
           <TextInput
             type="number"
             inputMode="numeric"

@@ -61,10 +61,7 @@ export function TypeInDialog({ vesselId, networkId, ssid, onClose }: TypeInDialo
       keepOpen
     >
       <form onSubmit={submit} noValidate className="flex flex-col gap-4" autoComplete="off">
-        <p>
-          Type in what the access points run today. This changes nothing aboard; it says what is so, from now
-          on as its age.
-        </p>
+        <p>Type in what the access points run today. This changes nothing aboard. Its age counts from now.</p>
         <TextInput
           label="Passphrase"
           hint="8 to 63 characters, exactly as a phone would type it."

@@ -77,13 +77,13 @@ export function reasonWords(reason: PlanReason, context: ReasonContext): string 
       return `after the party ${leaves} at ${momentBeside(reason.at, context)}${which}`;
     }
     case 'departed_guest':
-      return `because a guest who knows it left ${onDay(reason.at, context)}`;
+      return `a guest who knows it left ${onDay(reason.at, context)}`;
     case 'sign_off':
-      return `because somebody who knows it signed off ${onDay(reason.at, context)}`;
+      return `somebody who knows it signed off ${onDay(reason.at, context)}`;
     case 'lost_card':
-      return `because a card was lost ${onDay(reason.at, context)}`;
+      return `a card was lost ${onDay(reason.at, context)}`;
     case 'leak':
-      return `because a leak was reported ${onDay(reason.at, context)}`;
+      return `a leak was reported ${onDay(reason.at, context)}`;
     case 'owner_aboard':
       return `held while the owner is aboard, until ${momentBeside(reason.until, context)}`;
     case 'crossing':

@@ -1,5 +1,6 @@
 import type { Security } from '../../../shared/api/common.ts';
 import type { NetworkView } from '../../../shared/api/networks.ts';
+import type { RotationSummary } from '../../../shared/api/rotations.ts';
 import type { Audience } from '../../../shared/rules/permissions.ts';
 
 /** Who a network is for, as the line under its name. */
@@ -56,3 +57,9 @@ export function exposureWords(network: NetworkView): string {
       : '';
   return [gone, leaks ?? ''].filter(Boolean).join(', and ');
 }
+
+/** Whether a change entered by hand has its passphrase and its time has come, so that only the entry is missing. */
+export const awaitsEntry = (
+  { state, driver, dueAt }: Pick<RotationSummary, 'state' | 'driver' | 'dueAt'>,
+  now: Date,
+): boolean => state === 'staged' && driver === 'by_hand' && Date.parse(dueAt) <= now.getTime();

@@ -32,7 +32,7 @@ export function AccessPointItem(props: AccessPointItemProps) {
   const attention = point.seen === 'other' || point.seen === 'unreachable' || (drifted && !confirmed);
   return (
     <li className={cx('border-b border-rule px-3 py-3', active && !confirmed && 'bg-land')}>
-      <div className="flex flex-wrap items-center justify-between gap-x-4 gap-y-1">
+      <div className="grid grid-cols-[1fr_auto] items-center gap-x-4 gap-y-2 sm:grid-cols-[1fr_auto_auto]">
         <div>
           <p className="text-lg font-medium">
             <SafeText>{point.name}</SafeText>
@@ -45,7 +45,7 @@ export function AccessPointItem(props: AccessPointItemProps) {
         </div>
         <p
           className={cx(
-            'text-sm',
+            'text-right text-sm',
             confirmed && 'font-medium text-shore-ink',
             attention && 'font-medium text-magenta',
           )}
@@ -58,7 +58,11 @@ export function AccessPointItem(props: AccessPointItemProps) {
           ) : null}
         </p>
         {!confirmed && !active && ready ? (
-          <Button onClick={onActivate} aria-label={`Confirm ${point.name}`}>
+          <Button
+            className="max-sm:col-start-2"
+            onClick={onActivate}
+            aria-label={`Confirm this one: ${point.name}`}
+          >
             Confirm this one
           </Button>
         ) : null}

@@ -17,6 +17,7 @@ import {
   changeMarks,
   DAYS,
   type Mark,
+  placeMarks,
   placeOf,
   type Span,
   sixWeeks,
@@ -97,7 +98,7 @@ function Chart({ vesselId, zone, voyages, marks, span, now }: DrawnProps) {
         Voyages and passphrase changes of the next six weeks. The table after this has the same.
       </figcaption>
       <div className="grid grid-cols-[6.5rem_1fr] text-sm text-soft">
-        <span className="self-center py-2">Voyages</span>
+        <span className="content-center border-b border-rule">Voyages</span>
         <div className="relative border-b border-rule" style={{ height: `${rows * 2.25 + 0.5}rem` }}>
           {bars.map(({ voyage, left, width, row }) => (
             <span
@@ -105,41 +106,44 @@ function Chart({ vesselId, zone, voyages, marks, span, now }: DrawnProps) {
               title={`${visibleText(voyage.title)}, ${shipDateTime(voyage.startsAt, zone, now)} to ${shipDateTime(voyage.endsAt, zone, now)}`}
               style={{ left: percent(left), width: percent(width), top: `${row * 2.25 + 0.25}rem` }}
               className={cx(
-                'absolute h-8 truncate rounded-sm border px-2 leading-[1.9rem] text-ink',
+                'absolute h-8 truncate rounded-sm border leading-[1.9rem] text-ink',
+                width > 0.035 && 'px-2',
                 BAR[voyage.kind],
               )}
             >
-              <SafeText>{voyage.title}</SafeText>
+              {width > 0.035 ? <SafeText>{voyage.title}</SafeText> : null}
             </span>
           ))}
           {bars.length === 0 ? (
             <span className="absolute inset-y-0 content-center">None on the calendar</span>
           ) : null}
         </div>
-        {AUDIENCES.map((audience) => (
-          <Fragment key={audience}>
-            <span className="flex h-11 items-center border-b border-rule">
-              <Flag audience={audience} />
-            </span>
-            <div className="relative h-11 border-b border-rule">
-              {marks
-                .filter(({ change }) => change.audience === audience)
-                .map((mark) => (
+        {AUDIENCES.map((audience) => {
+          const lane = placeMarks(marks.filter(({ change }) => change.audience === audience));
+          const height = `${Math.max(1, ...lane.map(({ row }) => row + 1)) * 2.75}rem`;
+          return (
+            <Fragment key={audience}>
+              <span className="flex items-center border-b border-rule" style={{ height }}>
+                <Flag audience={audience} />
+              </span>
+              <div className="relative border-b border-rule" style={{ height }}>
+                <span style={{ left: percent(here) }} className="absolute inset-y-0 w-px bg-magenta" />
+                {lane.map((mark) => (
                   <Link
                     key={mark.change.id}
                     to={`/vessels/${vesselId}/networks/${mark.change.networkId}`}
                     title={markWords(mark, zone, now)}
                     aria-label={markWords(mark, zone, now)}
-                    style={{ left: percent(mark.left) }}
-                    className="absolute top-1 grid h-9 w-8 -translate-x-1/2 place-items-center rounded-md hover:bg-land"
+                    style={{ left: percent(mark.left), top: `${mark.row * 2.75 + 0.25}rem` }}
+                    className="absolute grid h-9 w-8 -translate-x-1/2 place-items-center rounded-md hover:bg-land"
                   >
                     <Flare state={mark.state} />
                   </Link>
                 ))}
-              <span style={{ left: percent(here) }} className="absolute inset-y-0 w-px bg-magenta" />
-            </div>
-          </Fragment>
-        ))}
+              </div>
+            </Fragment>
+          );
+        })}
         <span />
         <div>
           <Scale segments={DAYS} boxed className="h-2" />

@@ -51,9 +51,30 @@ export interface Mark {
   change: RotationSummary;
   /** When it happened, happens, or has been under way since. ISO. */
   at: string;
+  /** `late`: its time has come and it has not begun. */
   state: 'done' | 'planned' | 'now' | 'late';
-  /** Past the limit that was set for it, or its time has come and it has not begun. */
   left: number;
+}
+
+export interface PlacedMark extends Mark {
+  /** Row from the top of the lane, so that marks near each other can each be pressed. */
+  row: number;
+}
+
+/** Marks closer than this share of the six weeks stand below each other: a finger's width on a tablet. */
+const APART = 0.045;
+
+/** The marks of one lane in as few rows as keep them a finger apart. */
+export function placeMarks(marks: readonly Mark[]): PlacedMark[] {
+  const lasts: number[] = [];
+  return [...marks]
+    .sort((one, other) => one.left - other.left)
+    .map((mark) => {
+      const free = lasts.findIndex((last) => mark.left - last >= APART);
+      const row = free < 0 ? lasts.length : free;
+      lasts[row] = mark.left;
+      return { ...mark, row };
+    });
 }
 
 /** Changes of the span as marks: those that came into force, those planned, and those under way, at now. */
