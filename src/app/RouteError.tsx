@@ -12,6 +12,7 @@ export function RouteError() {
   const error = useRouteError();
   if (error instanceof AwayError) return <Away />;
   if (isNotFound(error)) return <NotFound />;
+  if (error instanceof ApiError && error.code === 'second_factor_needed') return <SecondFactorNeeded />;
   return <Fault error={error} />;
 }
 
@@ -45,6 +46,22 @@ export function NotFound() {
       <p>The address may be old, or your role aboard may have changed. Start from your first page.</p>
       <Link to="/" className={buttonLook('primary')}>
         Go to your first page
+      </Link>
+    </PlainFrame>
+  );
+}
+
+/** Where a vessel or a dealer asks a role for a second factor: the way to set it up comes first. */
+function SecondFactorNeeded() {
+  useTitle('Second factor');
+  return (
+    <PlainFrame title="Your role asks for a second factor.">
+      <p>
+        It is a code from an app on your phone, given beside your password. Set it up on your account page,
+        and everything of your role opens. If you have one already, sign out there and sign in with it.
+      </p>
+      <Link to="/account" className={buttonLook('primary')}>
+        Go to your account
       </Link>
     </PlainFrame>
   );

@@ -75,7 +75,7 @@ export function ZonePicker({ label, hint, error, value, onChange, className }: Z
             className={BOX}
           />
           {open ? (
-            <div className="mt-1 rounded-md border border-ink bg-paper">
+            <div className="mt-1.5 rounded-md border border-ink bg-paper">
               <div id={list} role="listbox" aria-label="Zones">
                 {shown.map((zone, index) => (
                   // biome-ignore lint/a11y/useKeyWithClickEvents: the box above handles the keyboard

@@ -56,7 +56,9 @@ function VesselAudit({ vessel }: { vessel: FleetVesselView }) {
       <div className="flex flex-col gap-1">
         <Sentence>
           <SafeText>{vessel.name}</SafeText>.{' '}
-          {worst ? (
+          {vessel.networks.length === 0 ? (
+            'No network has been entered yet.'
+          ) : worst ? (
             <Attention>{STANDING_SENTENCE[vessel.standing]}</Attention>
           ) : (
             STANDING_SENTENCE[vessel.standing]
@@ -75,9 +77,7 @@ function VesselAudit({ vessel }: { vessel: FleetVesselView }) {
         </p>
       </div>
       <Section title="Networks">
-        {vessel.networks.length === 0 ? (
-          <Empty title="No network has been entered for this vessel yet." />
-        ) : null}
+        {vessel.networks.length === 0 ? <Empty title="Her captain or ETO enters the networks." /> : null}
         <ul className="m-0 list-none p-0">
           {vessel.networks.map((network) => (
             <li

@@ -2,11 +2,11 @@ import { type FormEvent, useState } from 'react';
 import type { AcceptInvitation, InvitationView } from '../../../shared/api/auth.ts';
 import type { Language } from '../../../shared/api/common.ts';
 import { NAME_MAX, PASSWORD_MAX } from '../../../shared/rules/limits.ts';
-import { ROLE_NAMES } from '../../../shared/rules/permissions.ts';
 import { Button } from '../../components/Button.tsx';
 import { Select, TextInput } from '../../components/inputs.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { fieldError } from '../../lib/errors.ts';
+import { rolesInWords } from '../../lib/roleWords.ts';
 import { FormError } from './FormError.tsx';
 import { LANGUAGES } from './languages.ts';
 import { NewPasswordField } from './NewPasswordField.tsx';
@@ -30,8 +30,7 @@ export function InvitationForm({ invitation, error, busy, onAccept }: Invitation
   return (
     <form onSubmit={submit} noValidate className="flex w-full flex-col gap-5">
       <p>
-        As {invitation.roles.map((role) => ROLE_NAMES[role]).join(', ')}, with the address{' '}
-        <SafeText>{invitation.email}</SafeText>.
+        As {rolesInWords(invitation.roles)}, with the address <SafeText>{invitation.email}</SafeText>.
         {invitation.known
           ? ' You already have an account here. Give its password to accept; nothing else about it changes.'
           : null}

@@ -24,7 +24,7 @@ export function VesselTable({ rows }: { rows: readonly FleetRow[] }) {
         <>
           <Th>Vessel</Th>
           <Th>Standing</Th>
-          <Th>Boat last heard</Th>
+          <Th>Boat heard, how long ago</Th>
         </>
       }
     >
@@ -47,11 +47,9 @@ export function VesselTable({ rows }: { rows: readonly FleetRow[] }) {
                 <span className="text-soft">No network entered yet</span>
               )}
             </Td>
-            <Td attention={row.silent}>
+            <Td attention={row.silent} className="whitespace-nowrap">
               {row.lastHeardAt ? (
-                <>
-                  <DateTime at={row.lastHeardAt} zone={row.zone} as="age" /> ago
-                </>
+                <DateTime at={row.lastHeardAt} zone={row.zone} as="age" />
               ) : (
                 <span className="text-soft">Never</span>
               )}

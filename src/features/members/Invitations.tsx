@@ -6,9 +6,9 @@ import { useNotices } from '../../components/Notices.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { Attention } from '../../components/Sentence.tsx';
 import { sentenceFor } from '../../lib/errors.ts';
+import { rolesInWords } from '../../lib/roleWords.ts';
 import { visibleText } from '../../lib/safeText.ts';
 import { invite, membersQuery, withdrawInvitation } from './queries.ts';
-import { rolesInWords } from './roleWords.ts';
 
 interface InvitationsProps {
   vesselId: string;
@@ -68,7 +68,7 @@ export function Invitations({ vesselId, zone, invitations, mayManage }: Invitati
               <div className="flex flex-wrap gap-2">
                 {invitation.mail === 'waiting' ? null : (
                   <Button
-                    aria-label={`Send ${who} a new invitation`}
+                    aria-label={`Send again, to ${who}`}
                     onClick={() => resend.mutate(invitation)}
                     busy={resend.isPending && busyWith(resend.variables) && 'Sending…'}
                   >

@@ -10,6 +10,7 @@ import { useNotices } from '../../components/Notices.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { fieldError, namesFields, sentenceFor } from '../../lib/errors.ts';
 import { checkForm } from '../../lib/forms.ts';
+import { useFocusInvalid } from '../../lib/useFocusInvalid.ts';
 import { type Invite, invite, membersQuery } from './queries.ts';
 import { RoleBoxes } from './RoleBoxes.tsx';
 
@@ -34,6 +35,7 @@ export function InviteDialog({ vesselId, onClose }: { vesselId: string; onClose:
     },
   });
   const error = checked ?? send.error;
+  const frame = useFocusInvalid(error);
   const submit = (event: FormEvent) => {
     event.preventDefault();
     const given = { email, roles, ...(name.trim() === '' ? {} : { name }) };
@@ -43,7 +45,7 @@ export function InviteDialog({ vesselId, onClose }: { vesselId: string; onClose:
   };
   return (
     <Dialog open onClose={onClose} title="Invite somebody" keepOpen>
-      <form onSubmit={submit} noValidate className="flex flex-col gap-4">
+      <form ref={frame} onSubmit={submit} noValidate className="flex flex-col gap-4">
         <TextInput
           label="Mail address"
           hint="A link goes there. Whoever opens it chooses their own password."

@@ -6,10 +6,10 @@ import { useNotices } from '../../components/Notices.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { Attention } from '../../components/Sentence.tsx';
 import { sentenceFor } from '../../lib/errors.ts';
+import { rolesInWords } from '../../lib/roleWords.ts';
 import { visibleText } from '../../lib/safeText.ts';
 import { type Invite, invite, setRoles } from './queries.ts';
 import { RolesDialog, type Wanted } from './RolesDialog.tsx';
-import { rolesInWords } from './roleWords.ts';
 
 interface MemberListProps {
   vesselId: string;
@@ -100,7 +100,7 @@ export function MemberList({ vesselId, personId, members, mayManage }: MemberLis
             </div>
             {mayManage ? (
               <Button
-                aria-label={`Change the roles of ${visibleText(member.name)}`}
+                aria-label={`Change roles of ${visibleText(member.name)}`}
                 onClick={() => setOpen(member)}
               >
                 Change roles

@@ -3,7 +3,7 @@ import { ROLE_NAMES, VESSEL_ROLES, type VesselRole } from '../../../shared/rules
 import { FieldError } from '../../components/Field.tsx';
 import { Checkbox } from '../../components/inputs.tsx';
 
-const HINTS: Partial<Record<VesselRole, string>> = {
+const HINTS: Record<VesselRole, string> = {
   captain: 'Everything of the vessel, and who may do what.',
   chief_stew: 'Guests, crew list, and changes of the guest and crew networks.',
   purser: 'Guests, arrivals, cards and the log.',
@@ -27,8 +27,12 @@ export function RoleBoxes({ roles, onChange, error }: RoleBoxesProps) {
       {VESSEL_ROLES.map((role) => (
         <Checkbox
           key={role}
-          label={ROLE_NAMES[role]}
-          hint={HINTS[role]}
+          label={
+            <>
+              {ROLE_NAMES[role]}
+              <span className="block text-sm text-soft">{HINTS[role]}</span>
+            </>
+          }
           checked={roles.includes(role)}
           onChange={(event) =>
             onChange(

@@ -53,8 +53,14 @@ export function RolesDialog({ member, isSelf, onSave, onClose }: RolesDialogProp
         <RoleBoxes roles={roles} onChange={setRoles} error={fieldError(error, 'roles')} />
         <Checkbox
           className="border-t border-rule pt-2"
-          label="Suspended for now"
-          hint="They keep their roles but cannot use them, and are off this vessel at once."
+          label={
+            <>
+              Suspended for now
+              <span className="block text-sm text-soft">
+                They keep their roles but cannot use them, and are off this vessel at once.
+              </span>
+            </>
+          }
           checked={suspended}
           onChange={(event) => setSuspended(event.target.checked)}
         />

@@ -26,12 +26,19 @@ export function PermissionTable({ own }: { own: readonly VesselRole[] }) {
         className="relative"
         head={
           <>
-            <Th className="sticky left-0 bg-paper">May</Th>
+            <Th className="sticky left-0 bg-paper">Who may …</Th>
             {VESSEL_ROLES.map((role) => (
-              <Th key={role} className={cx('min-w-20 px-2 text-center', isOwn(role) && 'bg-land text-ink')}>
+              <th
+                key={role}
+                scope="col"
+                className={cx(
+                  'min-w-20 px-2 py-2 text-center align-bottom text-sm font-normal',
+                  isOwn(role) ? 'bg-land text-ink' : 'text-soft',
+                )}
+              >
                 {ROLE_NAMES[role]}
                 {isOwn(role) ? <span className="sr-only">, your role</span> : null}
-              </Th>
+              </th>
             ))}
           </>
         }

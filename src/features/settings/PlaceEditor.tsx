@@ -1,7 +1,8 @@
-import { useEffect, useId, useRef, useState } from 'react';
+import { useEffect, useId, useState } from 'react';
 import { Button } from '../../components/Button.tsx';
 import { TextInput } from '../../components/inputs.tsx';
 import { fieldError, namesFields, sentenceFor } from '../../lib/errors.ts';
+import { useFocusInvalid } from '../../lib/useFocusInvalid.ts';
 import { moved, type PlaceRow, withNew } from './placeRows.ts';
 
 interface PlaceEditorProps {
@@ -26,14 +27,14 @@ interface PlaceEditorProps {
 export function PlaceEditor(props: PlaceEditorProps) {
   const { word, list, rows, onChange, nameMax, deckMax, max, deckHint, error, isSaving } = props;
   const decks = useId();
-  const frame = useRef<HTMLFormElement>(null);
+  const frame = useFocusInvalid(error);
   const [wanted, setWanted] = useState<string | null>(null);
   const [told, setTold] = useState('');
   useEffect(() => {
     if (wanted === null) return;
     frame.current?.querySelector<HTMLElement>(`[data-place="${wanted}"]`)?.focus();
     setWanted(null);
-  }, [wanted]);
+  }, [wanted, frame]);
   const edit = (index: number, changes: Partial<PlaceRow>) =>
     onChange(rows.map((row, at) => (at === index ? { ...row, ...changes } : row)));
   const move = (row: PlaceRow, index: number, step: -1 | 1) => {
@@ -103,7 +104,7 @@ export function PlaceEditor(props: PlaceEditorProps) {
                 <div className="flex gap-2 sm:pt-[1.45rem]">
                   <Button
                     data-place={`${row.key}-up`}
-                    aria-label={`Move ${which} up`}
+                    aria-label={`Up, ${which}`}
                     disabled={index === 0}
                     onClick={() => move(row, index, -1)}
                   >
@@ -111,17 +112,13 @@ export function PlaceEditor(props: PlaceEditorProps) {
                   </Button>
                   <Button
                     data-place={`${row.key}-down`}
-                    aria-label={`Move ${which} down`}
+                    aria-label={`Down, ${which}`}
                     disabled={index === rows.length - 1}
                     onClick={() => move(row, index, 1)}
                   >
                     Down
                   </Button>
-                  <Button
-                    kind="quiet"
-                    aria-label={`Take ${which} off the list`}
-                    onClick={() => remove(row, index)}
-                  >
+                  <Button kind="quiet" aria-label={`Take off, ${which}`} onClick={() => remove(row, index)}>
                     Take off
                   </Button>
                 </div>

@@ -78,7 +78,7 @@ export function ShipZones({ settings, mayEdit }: ShipZonesProps) {
               {mayEdit && before ? (
                 <Button
                   kind="quiet"
-                  aria-label={`Take ${span.zone} away`}
+                  aria-label={`Take away ${span.zone}`}
                   onClick={() => take.mutate({ span, before })}
                   busy={take.isPending && take.variables.span.id === span.id && 'Taking away…'}
                 >

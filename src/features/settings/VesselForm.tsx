@@ -8,8 +8,10 @@ import { Caution } from '../../components/Caution.tsx';
 import { FieldError } from '../../components/Field.tsx';
 import { Checkbox, TextInput } from '../../components/inputs.tsx';
 import { useNotices } from '../../components/Notices.tsx';
+import { SafeText } from '../../components/SafeText.tsx';
 import { ApiError, fieldError, namesFields, sentenceFor } from '../../lib/errors.ts';
 import { checkForm } from '../../lib/forms.ts';
+import { useFocusInvalid } from '../../lib/useFocusInvalid.ts';
 import { saveVessel, settingsQuery } from './queries.ts';
 import { bodyOf, differing, draftOf, FIELD_WORDS, follow, type VesselDraft } from './vesselDraft.ts';
 
@@ -44,6 +46,7 @@ export function VesselForm({ settings }: { settings: VesselSettings }) {
   }
   const { draft } = held;
   const error = checked ?? save.error;
+  const form = useFocusInvalid(error);
   const isConflict = error instanceof ApiError && error.code === 'conflict';
   const set = (changes: Partial<VesselDraft>) =>
     setHeld((before) => ({ ...before, draft: { ...before.draft, ...changes } }));
@@ -69,7 +72,7 @@ export function VesselForm({ settings }: { settings: VesselSettings }) {
   };
   const isChanged = differing(draft, draftOf(settings)).length > 0;
   return (
-    <form onSubmit={submit} noValidate className="grid max-w-2xl gap-x-6 gap-y-5 sm:grid-cols-2">
+    <form ref={form} onSubmit={submit} noValidate className="grid max-w-2xl gap-x-6 gap-y-5 sm:grid-cols-2">
       <TextInput {...box('name')} maxLength={NAME_MAX} className="sm:col-span-2" />
       <TextInput {...box('kind')} maxLength={60} hint="Motor yacht, sailing yacht, …" />
       <TextInput {...box('homePort')} maxLength={NAME_MAX} hint="May be left empty." />
@@ -113,20 +116,26 @@ export function VesselForm({ settings }: { settings: VesselSettings }) {
         ) : null}
       </fieldset>
       <div className="flex flex-col items-start gap-4 sm:col-span-2">
-        {held.both.length > 0 || isConflict ? (
-          <Caution
-            announce
-            action={
-              isConflict && settings.updatedAt === held.over.updatedAt ? (
-                <Button onClick={() => void fresh()}>Reload the settings</Button>
-              ) : null
-            }
-          >
-            Somebody changed these settings while you were editing. The newest ones are reloaded here and
-            nothing you typed is lost: look it over, then save again.
-            {held.both.length > 0
-              ? ` Yours stands where both of you changed something: ${held.both.map((key) => FIELD_WORDS[key]).join(', ')}.`
-              : null}
+        {isConflict && save.variables?.updatedAt === settings.updatedAt ? (
+          <Caution announce action={<Button onClick={() => void fresh()}>Reload the settings</Button>}>
+            Somebody changed these settings while you were editing. Reload them: nothing you typed is lost.
+          </Caution>
+        ) : isConflict || held.both.length > 0 ? (
+          <Caution announce>
+            Somebody changed these settings while you were editing. The newest ones are here now and nothing
+            you typed is lost: look it over, then save again.
+            {held.both.map((key) => (
+              <span key={key} className="block">
+                {FIELD_WORDS[key]}: yours stands
+                {key === 'secondFactorRoles' || draftOf(settings)[key] === '' ? null : (
+                  <>
+                    {' '}
+                    in place of their “<SafeText>{draftOf(settings)[key]}</SafeText>”
+                  </>
+                )}
+                .
+              </span>
+            ))}
           </Caution>
         ) : null}
         {error && !isConflict && !namesFields(error) ? (

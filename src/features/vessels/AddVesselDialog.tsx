@@ -8,6 +8,7 @@ import { TextInput } from '../../components/inputs.tsx';
 import { ZonePicker } from '../../components/ZonePicker.tsx';
 import { fieldError, namesFields, sentenceFor } from '../../lib/errors.ts';
 import { checkForm } from '../../lib/forms.ts';
+import { useFocusInvalid } from '../../lib/useFocusInvalid.ts';
 import { addVessel, type NewVessel } from './queries.ts';
 
 interface AddVesselDialogProps {
@@ -28,6 +29,7 @@ export function AddVesselDialog({ onClose, onAdded }: AddVesselDialogProps) {
   const [checked, setChecked] = useState<unknown>(null);
   const add = useMutation({ mutationFn: addVessel, onSuccess: onAdded });
   const error = checked ?? add.error;
+  const frame = useFocusInvalid(error);
   const box = (key: keyof typeof form, path: string = key) => ({
     value: form[key],
     autoComplete: 'off',
@@ -45,7 +47,7 @@ export function AddVesselDialog({ onClose, onAdded }: AddVesselDialogProps) {
   };
   return (
     <Dialog open onClose={onClose} title="Add a vessel" keepOpen>
-      <form onSubmit={submit} noValidate className="grid gap-4 sm:grid-cols-2">
+      <form ref={frame} onSubmit={submit} noValidate className="grid gap-4 sm:grid-cols-2">
         <TextInput {...box('name')} label="Her name" maxLength={NAME_MAX} className="sm:col-span-2" />
         <TextInput {...box('kind')} label="Kind" maxLength={60} hint="Motor yacht, sailing yacht, …" />
         <TextInput {...box('homePort')} label="Home port" maxLength={NAME_MAX} hint="May be left empty." />
