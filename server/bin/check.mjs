@@ -43,10 +43,10 @@ export async function check(children, steps = STEPS) {
 if (import.meta.url === pathToFileURL(process.argv[1] ?? '').href) {
   await main(async () => {
     checkNode();
-    packagesUp({ needs: 'vitest' });
     const children = [];
     const end = orderlyEnd({ children });
     end.onSignals((number) => 128 + number);
+    await packagesUp({ needs: 'vitest', children });
     const { passed, failed } = await check(children, [...STEPS, ARROWS]);
     if (end.isStopping()) return;
     say(`${passed} passed, ${failed} failed`);

@@ -29,7 +29,7 @@ await main(async () => {
   const end = orderlyEnd({ children });
   end.onSignals((number) => 128 + number);
   try {
-    packagesUp({ log: tell });
+    await packagesUp({ log: tell, children });
     // The program that runs aboard is far from the database and must do without.
     const aboard = file.startsWith('server/relay/');
     const env = aboard ? process.env : await withDatabase(end, children);

@@ -31,7 +31,7 @@ export function checkNode(version = process.versions.node) {
  * Installs the packages of package-lock.json when they are missing or older than it, or when a production install
  * left out `needs`, a package only development has.
  */
-export function packagesUp({ needs = 'tsx', log = say } = {}) {
+export async function packagesUp({ needs = 'tsx', log = say, children = [] } = {}) {
   const modules = path.join(ROOT, 'node_modules');
   const mark = path.join(modules, '.package-lock.json');
   const lock = path.join(ROOT, 'package-lock.json');
@@ -42,24 +42,33 @@ export function packagesUp({ needs = 'tsx', log = say } = {}) {
   )
     return;
   log('Installing packages (a minute or two the first time)…');
-  const env = { ...process.env };
-  if (needs !== 'tsx') env.NODE_ENV = 'development';
-  const done = spawnSync('npm', ['ci', '--no-audit', '--no-fund'], {
-    cwd: ROOT,
-    env,
-    stdio: ['ignore', 'pipe', 'pipe'],
-    encoding: 'utf8',
-  });
-  if (done.error || done.status !== 0) {
-    const why = (done.stderr ?? '')
-      .split('\n')
-      .filter((line) => /npm error/i.test(line))
-      .slice(0, 4)
-      .join('\n');
-    throw new SetUpError(
-      `The packages could not be installed.\n${why}\nCheck that npm is there (npm -v), that its registry can be reached and that there is room on the disk, then run the command again.`,
-    );
-  }
+  const env = { ...process.env, ...(needs === 'tsx' ? {} : { NODE_ENV: 'development' }) };
+  const npm = (...args) =>
+    new Promise((resolve) => {
+      const stdio = ['ignore', 'ignore', 'pipe'];
+      // Said outright: `npm start --silent` would silence this one too, and its reasons with it.
+      const flags = ['--no-audit', '--no-fund', '--loglevel=error'];
+      const child = spawn('npm', [...args, ...flags], {
+        cwd: ROOT,
+        env,
+        stdio,
+        detached: true,
+      });
+      children.push(child);
+      let told = '';
+      child.stderr.on('data', (part) => (told += part));
+      child.once('error', (error) => resolve(`npm error ${error.message}`));
+      child.once('close', (code) => resolve(code === 0 ? null : told));
+    });
+  // Without a network npm would try each package for minutes; offline it takes what it kept, or fails at once.
+  const answer = await npm('ping', '--fetch-retries=0', '--fetch-timeout=15000');
+  const offline = /ENOTFOUND|EAI_AGAIN|ETIMEDOUT|ENETUNREACH|EHOSTUNREACH|ECONNREFUSED/.test(answer ?? '');
+  const failure = await npm('ci', ...(offline ? ['--offline'] : []));
+  if (failure === null) return;
+  const why = failure.split('\n').filter((line) => /npm err/i.test(line));
+  throw new SetUpError(
+    `The packages could not be installed${offline ? ', for the npm registry cannot be reached' : ''}.\n${why.slice(0, 4).join('\n')}\nCheck that npm is there (npm -v), that its registry can be reached and that there is room on the disk, then run the command again.`,
+  );
 }
 
 /** Whether a program is installed. Servers' own folders count: an ordinary user's PATH often lacks them. */

@@ -41,7 +41,7 @@ await main(async () => {
   const end = orderlyEnd({ children });
   end.onSignals(() => 0);
   try {
-    packagesUp();
+    await packagesUp({ children });
     say('Starting the database…');
     const starting = databaseForServer();
     end.last(() => starting.then((database) => database.stop()).catch(() => undefined));

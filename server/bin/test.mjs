@@ -42,7 +42,7 @@ await end.stop(total.failed === 0 && total.passed > 0 ? 0 : 1);
 
 async function everything() {
   checkNode();
-  packagesUp({ needs: 'vitest' });
+  await packagesUp({ needs: 'vitest', children });
   const missing = Object.keys(PROGRAMS).filter((program) => !onPath(program));
   debianUp(
     missing.map((program) => PROGRAMS[program]),
