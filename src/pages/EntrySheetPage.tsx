@@ -65,6 +65,7 @@ interface SheetProps {
 function Sheet({ vesselId, rotation, zone, mayEnter }: SheetProps) {
   const navigate = useNavigate();
   const name = <SafeText>{rotation.ssid}</SafeText>;
+  const back = rotation.reasons.some(({ code }) => code === 'going_back');
   const networkPath = `/vessels/${vesselId}/networks/${rotation.networkId}`;
   switch (rotation.state) {
     case 'live':
@@ -77,11 +78,16 @@ function Sheet({ vesselId, rotation, zone, mayEnter }: SheetProps) {
               </ButtonLink>
             }
           >
-            {name} has its new passphrase. {rotation.sentence}
+            {name} {back ? 'is back on the passphrase before' : 'has its new passphrase'}. {rotation.sentence}
           </Sentence>
           <p>
-            Everybody who uses it joins again, and so do televisions and tablets. The passphrase before no
-            longer works.
+            {rotation.liveAt ? (
+              <>
+                In force since <DateTime at={rotation.liveAt} zone={zone} as="words" />.{' '}
+              </>
+            ) : null}
+            Whoever uses it has to join again once, and so do televisions and tablets.{' '}
+            {back ? 'The one that was given up' : 'The passphrase before'} no longer works.
           </p>
           <InForce {...{ vesselId, rotation, zone, mayEnter }} />
         </>
@@ -139,6 +145,14 @@ function OpenSentence({ rotation }: { rotation: RotationView }) {
       <>
         {rotation.verified} of {rotation.of} access points of {name} {rotation.verified === 1 ? 'is' : 'are'}{' '}
         confirmed. {left === 1 ? 'One is' : `${left} are`} still to do.
+      </>
+    );
+  }
+  if (rotation.reasons.some(({ code }) => code === 'going_back')) {
+    return (
+      <>
+        Put the passphrase before back into {left === 1 ? 'the access point' : `the ${left} access points`} of{' '}
+        {name}, and type it back for each.
       </>
     );
   }

@@ -60,7 +60,7 @@ export function NetworksPage() {
     <Page>
       <PageState query={query} loading="Fetching the networks…" failed="The networks could not be fetched.">
         {({ networks, crossingUntil }) => {
-          const worst = worstOf(networks);
+          const worst = worstOf(networks, now);
           const chosen =
             asked && asked.what !== 'add' ? networks.find(({ id }) => id === asked.networkId) : undefined;
           if (networks.length === 0) {

@@ -107,6 +107,7 @@ function Next(props: ChangeLinesProps) {
 }
 
 const HEADINGS: Partial<Record<RotationSummary['state'], string>> = {
+  staged: 'Going back',
   handed_out: 'Handed out, not yet confirmed',
   applying: 'Being changed now',
   unknown: 'Not yet known',

@@ -3,7 +3,8 @@ import { hasStarted } from '../../../shared/rules/hasStarted.ts';
 import { DateTime } from '../../components/DateTime.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { Attention } from '../../components/Sentence.tsx';
-import { exposureWords } from './words.ts';
+import { useNow } from '../../lib/clock.ts';
+import { awaitsEntry, exposureWords } from './words.ts';
 
 type Matter =
   | 'needs_somebody'
@@ -12,11 +13,12 @@ type Matter =
   | 'exposed'
   | 'overdue'
   | 'unrecorded'
+  | 'waiting'
   | 'under_way'
   | 'due';
 
 /** What of a network most needs saying; null when it is in order. */
-export function matterOf(network: NetworkView): Matter | null {
+export function matterOf(network: NetworkView, now: Date): Matter | null {
   const { change, drift, live, standing } = network;
   if (change?.state === 'needs_somebody' || change?.state === 'reconciling') return 'needs_somebody';
   if (change?.state === 'unknown') return 'unknown';
@@ -24,6 +26,7 @@ export function matterOf(network: NetworkView): Matter | null {
   if (standing === 'exposed') return 'exposed';
   if (standing === 'overdue') return 'overdue';
   if (live === null) return 'unrecorded';
+  if (change && awaitsEntry(change, now)) return 'waiting';
   if (change && hasStarted(change)) return 'under_way';
   return standing === 'due' ? 'due' : null;
 }
@@ -35,26 +38,29 @@ const ORDER: readonly Matter[] = [
   'exposed',
   'overdue',
   'unrecorded',
+  'waiting',
   'under_way',
   'due',
 ];
 
 /** The network that needs something first, worst first; null when all are in order. */
-export function worstOf(networks: readonly NetworkView[]): NetworkView | null {
+export function worstOf(networks: readonly NetworkView[], now: Date): NetworkView | null {
   const rank = (network: NetworkView) => {
-    const matter = matterOf(network);
+    const matter = matterOf(network, now);
     return matter === null ? ORDER.length : ORDER.indexOf(matter);
   };
   const [first] = [...networks].sort((one, other) => rank(one) - rank(other));
-  return first && matterOf(first) !== null ? first : null;
+  return first && matterOf(first, now) !== null ? first : null;
 }
 
 /** When a network changes and what that asks of somebody, as the sentence after what is so. */
 function WhatNext({ network, zone }: { network: NetworkView; zone: string }) {
+  const now = useNow();
   const { change, may } = network;
   if (!change)
     return <>No change is planned. {may.plan ? 'Change it now.' : 'Ask the captain to change it.'}</>;
   if (hasStarted(change)) return <>{change.sentence}</>;
+  if (awaitsEntry(change, now)) return <>Its new passphrase is ready: it has to be entered by hand now.</>;
   return (
     <>
       It changes <DateTime at={change.dueAt} zone={zone} as="words" />.
@@ -64,9 +70,10 @@ function WhatNext({ network, zone }: { network: NetworkView; zone: string }) {
 
 /** What is so with one network and what to do about it. */
 export function NetworkSentence({ network, zone }: { network: NetworkView; zone: string }) {
+  const now = useNow();
   const name = <SafeText>{network.ssid}</SafeText>;
   const next = <WhatNext network={network} zone={zone} />;
-  switch (matterOf(network)) {
+  switch (matterOf(network, now)) {
     case 'needs_somebody':
       return (
         <>
@@ -107,6 +114,10 @@ export function NetworkSentence({ network, zone }: { network: NetworkView; zone:
             : 'Type in the one in force, or make one now.'}
         </>
       );
+    case 'waiting':
+      return (
+        <>The new passphrase of {name} is ready. It has to be entered into the access points by hand now.</>
+      );
     case 'under_way':
       return (
         <>
@@ -130,7 +141,8 @@ export function NetworkSentence({ network, zone }: { network: NetworkView; zone:
 
 /** What is so with a vessel's networks and what to do: the worst one, and how many more there are like it. */
 export function NetworksSentence({ networks, zone }: { networks: readonly NetworkView[]; zone: string }) {
-  const worst = worstOf(networks);
+  const now = useNow();
+  const worst = worstOf(networks, now);
   if (!worst) {
     const next = networks
       .filter(({ change }) => change !== null)
@@ -149,7 +161,7 @@ export function NetworksSentence({ networks, zone }: { networks: readonly Networ
       </>
     );
   }
-  const others = networks.filter((network) => network !== worst && matterOf(network) !== null).length;
+  const others = networks.filter((network) => network !== worst && matterOf(network, now) !== null).length;
   return (
     <>
       <NetworkSentence network={worst} zone={zone} />

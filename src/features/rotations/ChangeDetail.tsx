@@ -78,14 +78,14 @@ function Detail({
           known.
         </p>
       ) : null}
-      {started || settled ? <Outcomes rotation={rotation} zone={zone} /> : null}
+      {started || rotation.state === 'drifted' ? <Outcomes {...{ rotation, zone, started }} /> : null}
       <div className="flex flex-wrap gap-3">
-        {rotation.may.enter || (settled && rotation.state === 'drifted') ? (
+        {rotation.may.enter || settled ? (
           <ButtonLink
             kind={started ? 'primary' : 'secondary'}
             to={`/vessels/${vesselId}/entry/${rotation.id}`}
           >
-            {rotation.state === 'drifted' ? 'See which access points' : 'Open the entry sheet'}
+            {settled ? 'See the access points' : 'Open the entry sheet'}
           </ButtonLink>
         ) : null}
         {rotation.may.goOn ? (
@@ -108,7 +108,7 @@ function Detail({
 }
 
 /** Access point by access point, what was last seen and when. */
-function Outcomes({ rotation, zone }: { rotation: RotationView; zone: string }) {
+function Outcomes({ rotation, zone, started }: { rotation: RotationView; zone: string; started: boolean }) {
   if (rotation.accessPoints.length === 0) return null;
   return (
     <>
@@ -119,7 +119,7 @@ function Outcomes({ rotation, zone }: { rotation: RotationView; zone: string }) 
         className="max-w-md"
       />
       <Table
-        caption="What each access point runs"
+        caption={started ? 'How far each access point is' : 'What each access point runs'}
         head={
           <>
             <Th>Access point</Th>

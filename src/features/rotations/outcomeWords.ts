@@ -24,11 +24,13 @@ export function outcomeWords(point: Point): string {
 }
 
 /** Which passphrases to try and in which order, as a sentence; null where only the one in force is left. */
-export function tryWords({ toTry, state, reasons }: RotationView): string | null {
-  if (toTry.length < 2) return null;
+export function tryWords({ toTry, state, reasons, handedOutAt }: RotationView): string | null {
   const back = reasons.some(({ code }) => code === 'going_back');
+  // Before the sheet was opened nothing has left, so only the one in force can be running.
+  const left = back || handedOutAt !== null || state === 'drifted';
+  if (toTry.length < 2 || !left) return null;
   const names = back
-    ? { new: 'the one before, which is being put back', old: 'the one that was given up' }
+    ? { new: 'the one that is being put back', old: 'the one that was given up' }
     : { new: 'the new passphrase', old: 'the old one' };
   const [first = 'new', second = 'old'] = toTry;
   const unknown = state === 'unknown' ? 'It is not yet known which one works. ' : '';
