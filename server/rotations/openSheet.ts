@@ -2,6 +2,7 @@ import type { EntrySheet } from '../../shared/api/rotations.ts';
 import { AppError } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
 import { recordHandover } from '../handovers/recordHandover.ts';
+import { holderOf } from '../passphrases/reveal.ts';
 import { openPassphrase } from '../passphrases/sealPassphrase.ts';
 import { byActor, requireFresh, type VerbContext } from './changeNow.ts';
 import { crossingUntil, SHEET_REPORTS_WITHIN_MS } from './handOut.ts';
@@ -45,7 +46,7 @@ export async function openSheet(context: VerbContext, rotationId: string): Promi
     vesselId: open.vesselId,
     networkId: open.networkId,
     passphraseId: to,
-    holder: { kind: 'person', id: actor.personId },
+    holder: await holderOf(services, tx, open.vesselId, actor.personId),
     channel: 'entry_sheet',
     byPerson: actor.personId,
     at: now,
