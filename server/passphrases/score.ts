@@ -1,5 +1,5 @@
 import { Worker } from 'node:worker_threads';
-import { CONTEXT_WORD_MAX, CONTEXT_WORDS_MAX, SCORE_MAX } from '../../shared/rules/limits.ts';
+import { CONTEXT_WORD_MAX, CONTEXT_WORDS_MAX, PASSPHRASE_MAX } from '../../shared/rules/limits.ts';
 import { hardnessBits } from '../../shared/rules/strength.ts';
 
 /** How many guesses a typed passphrase is worth; `bits` is the binary logarithm of that. */
@@ -55,7 +55,7 @@ export class Scorer {
     }
     return new Promise((answer, fail) => {
       this.waiting.push({
-        passphrase: passphrase.slice(0, SCORE_MAX),
+        passphrase: passphrase.slice(0, PASSPHRASE_MAX),
         context: context.slice(0, CONTEXT_WORDS_MAX).map((word) => word.slice(0, CONTEXT_WORD_MAX)),
         answer,
         fail,

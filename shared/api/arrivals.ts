@@ -87,7 +87,6 @@ export const guestRow = z.strictObject({
   fromAt: instant.nullable().default(null),
   untilAt: instant.nullable().default(null),
 });
-export type GuestRow = z.infer<typeof guestRow>;
 
 const partyForm = z.strictObject({
   name: nameText(NAME_MAX),

@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { PRINT_MAX } from '../rules/limits.ts';
 import {
   audience,
   cardFormat,
@@ -6,12 +7,12 @@ import {
   id,
   instant,
   language,
+  networkParams,
   pageQuery,
   security,
   vesselParams,
 } from './common.ts';
 import { contract, vessel } from './contract.ts';
-import { networkParams } from './networks.ts';
 
 const whoMayPrint = vessel('cards.print.guest', 'cards.print.crew', 'cards.print.owner');
 
@@ -95,9 +96,6 @@ export const showCode = contract({
   params: networkParams.extend({ guestId: id }),
   response: shownCode,
 });
-
-/** Cards of one print. */
-export const PRINT_MAX = 500;
 
 export const printBody = z
   .strictObject({

@@ -1,14 +1,21 @@
 import { z } from 'zod';
+import { CARD_LANGUAGES } from '../messages/card.ts';
+import { PAGE_DEFAULT, PAGE_MAX } from '../rules/limits.ts';
 import { AUDIENCES, DEALER_ROLES, VESSEL_ROLES } from '../rules/permissions.ts';
+import { isPlainLine } from '../rules/plainLine.ts';
+import { WIFI_SECURITIES } from '../rules/wifi.ts';
 
 export const id = z.uuid('This is not an identifier we made');
-/** An instant in UTC, ISO 8601 with `Z`. */
-export const instant = z.iso.datetime({ error: 'Give an instant such as 2026-06-14T09:00:00Z' });
+const likeThis = 'Give an instant such as 2026-06-14T09:00:00Z';
+/** An instant in UTC, ISO 8601 with `Z`, of a year that a vessel's calendar can mean: 1900 to 2199 (common practice, no source). */
+export const instant = z.iso
+  .datetime({ error: likeThis })
+  .refine((text) => text >= '19' && text < '22', likeThis);
 export const audience = z.enum(AUDIENCES);
 export const vesselRole = z.enum(VESSEL_ROLES);
 export const dealerRole = z.enum(DEALER_ROLES);
-export const security = z.enum(['wpa2', 'wpa3', 'transition']);
-export const cardLanguage = z.enum(['en', 'fr', 'it', 'es', 'de']);
+export const security = z.enum(WIFI_SECURITIES);
+export const cardLanguage = z.enum(CARD_LANGUAGES);
 export const language = z.enum([
   'en',
   'fr',
@@ -44,7 +51,7 @@ export const rotationState = z.enum([
 ]);
 
 export type Security = z.infer<typeof security>;
-export type CardLanguage = z.infer<typeof cardLanguage>;
+export type { CardLanguage } from '../messages/card.ts';
 export type Language = z.infer<typeof language>;
 export type CardFormat = z.infer<typeof cardFormat>;
 export type VoyageKind = z.infer<typeof voyageKind>;
@@ -53,11 +60,13 @@ export type Source = z.infer<typeof source>;
 
 /** Path parameters of a route below one vessel. */
 export const vesselParams = z.strictObject({ vesselId: id });
+/** Path parameters of a route below one network. */
+export const networkParams = vesselParams.extend({ networkId: id });
 
 /** Keyset paging: the cursor is opaque and signed by the server. */
 export const pageQuery = z.strictObject({
   after: z.string().max(400).optional(),
-  limit: z.coerce.number().int().min(1).max(100).default(50),
+  limit: z.coerce.number().int().min(1).max(PAGE_MAX).default(PAGE_DEFAULT),
 });
 
 /** RFC 9457 problem details, as every error is answered. */
@@ -80,5 +89,4 @@ export const nameText = (max: number, missing = 'Give a name') =>
     .trim()
     .min(1, missing)
     .max(max, `Keep it to ${max} characters`)
-    // biome-ignore lint/suspicious/noControlCharactersInRegex: the rule is about control characters
-    .refine((text) => !/[\u0000-\u001f\u007f]/.test(text), 'Leave out line breaks and control characters');
+    .refine(isPlainLine, 'Leave out line breaks and control characters');

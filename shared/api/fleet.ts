@@ -29,7 +29,7 @@ export const fleetNextChange = z.strictObject({
 });
 export type FleetNextChange = z.infer<typeof fleetNextChange>;
 
-/** Words for the weakest live passphrase: "Crew, hours to guess". Never bits, lengths or scores (guard R16). */
+/** Words for the weakest live passphrase: "Crew, hours to guess". Never bits, lengths or scores (R16). */
 const fleetWeakest = z.strictObject({ audience, words: z.string() });
 
 export const fleetRow = z.strictObject({

@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { SEARCH_MAX } from '../rules/limits.ts';
 import { LOG_KINDS, type LogKind } from '../rules/logKinds.ts';
+import { isPlainLine } from '../rules/plainLine.ts';
 import { id, instant, pageQuery, vesselParams } from './common.ts';
 import { contract, vessel } from './contract.ts';
 
@@ -16,8 +17,7 @@ export const logFilter = z.strictObject({
     .trim()
     .min(2, 'Give at least two letters of the name')
     .max(SEARCH_MAX, `Keep it to ${SEARCH_MAX} characters`)
-    // biome-ignore lint/suspicious/noControlCharactersInRegex: the rule is about control characters
-    .refine((text) => !/[\u0000-\u001f\u007f]/.test(text), 'Leave out line breaks and control characters')
+    .refine(isPlainLine, 'Leave out line breaks and control characters')
     .optional(),
   from: instant.optional(),
   to: instant.optional(),

@@ -9,12 +9,10 @@ import {
   WORDS_MIN,
 } from '../rules/limits.ts';
 import { checkSsid } from '../rules/passphrase.ts';
-import { audience, id, instant, rotationState, security, vesselParams } from './common.ts';
+import { audience, id, instant, networkParams, rotationState, security, vesselParams } from './common.ts';
 import { contract, vessel } from './contract.ts';
 import { fleetStanding } from './fleet.ts';
 import { rotationSummary } from './rotations.ts';
-
-export const networkParams = vesselParams.extend({ networkId: id });
 
 const time = z.string().regex(/^([01]\d|2[0-3]):[0-5]\d$/, 'Give a time such as 02:00');
 

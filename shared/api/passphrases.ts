@@ -1,13 +1,13 @@
 import { z } from 'zod';
-import { PASSPHRASE_MAX } from '../rules/limits.ts';
+import { PASSPHRASE_MAX, TYPED_MAX } from '../rules/limits.ts';
 import { checkPassphrase } from '../rules/passphrase.ts';
-import { id, instant, security } from './common.ts';
+import { id, instant, networkParams, security } from './common.ts';
 import { contract, vessel } from './contract.ts';
-import { networkParams, networkView } from './networks.ts';
+import { networkView } from './networks.ts';
 
 const typed = z
   .string()
-  .max(PASSPHRASE_MAX + 137, `A passphrase has at most ${PASSPHRASE_MAX} characters`)
+  .max(TYPED_MAX, `A passphrase has at most ${PASSPHRASE_MAX} characters`)
   .superRefine((text, context) => {
     const checked = checkPassphrase(text);
     if (!checked.ok) context.addIssue({ code: 'custom', message: checked.reason });

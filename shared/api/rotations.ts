@@ -1,15 +1,29 @@
 import { z } from 'zod';
-import { NOTE_MAX } from '../rules/limits.ts';
-import { audience, driver, id, instant, pageQuery, rotationState, security, vesselParams } from './common.ts';
+import { NOTE_MAX, PASSPHRASE_MAX, TYPED_MAX } from '../rules/limits.ts';
+import {
+  audience,
+  driver,
+  id,
+  instant,
+  networkParams,
+  pageQuery,
+  rotationState,
+  security,
+  vesselParams,
+} from './common.ts';
 import { contract, vessel } from './contract.ts';
 
 const planners = vessel('rotation.plan.owner', 'rotation.plan.guest', 'rotation.plan.crew');
 const entering = vessel('rotation.enter');
 const viewing = vessel('networks.view');
 
-const networkParams = z.strictObject({ vesselId: id, networkId: id });
-const rotationParams = z.strictObject({ vesselId: id, rotationId: id });
-const accessPointParams = z.strictObject({ vesselId: id, rotationId: id, accessPointId: id });
+const rotationParams = vesselParams.extend({ rotationId: id });
+const accessPointParams = rotationParams.extend({ accessPointId: id });
+
+/** What was typed back without seeing it. */
+const typedBack = z.strictObject({
+  typed: z.string().max(TYPED_MAX, `A passphrase has at most ${PASSPHRASE_MAX} characters`),
+});
 
 /** Why somebody changes a passphrase now. */
 export const changeReason = z.enum(['routine', 'leak', 'departure', 'lost_card', 'dismissal']);
@@ -235,7 +249,7 @@ export const confirmAccessPoint = contract({
   access: entering,
   secret: true,
   params: accessPointParams,
-  body: z.strictObject({ typed: z.string().max(200, 'A passphrase has at most 63 characters') }),
+  body: typedBack,
   response: rotationView,
 });
 
@@ -270,6 +284,6 @@ export const acceptDrift = contract({
   access: entering,
   secret: true,
   params: accessPointParams,
-  body: z.strictObject({ typed: z.string().max(200, 'A passphrase has at most 63 characters') }),
+  body: typedBack,
   response: rotationView,
 });

@@ -6,12 +6,11 @@
  * put impersonally instead.
  */
 
+import type { Audience } from '../rules/permissions.ts';
+
 export const CARD_LANGUAGES = ['en', 'fr', 'it', 'es', 'de'] as const;
 
 export type CardLanguage = (typeof CARD_LANGUAGES)[number];
-
-/** Who a network is for; the word that stands beside the flag. */
-export type CardAudience = 'owner' | 'guest' | 'crew';
 
 export interface CardMessages {
   /** The language's own name, for choosing it. */
@@ -19,7 +18,7 @@ export interface CardMessages {
   readonly network: string;
   readonly password: string;
   readonly welcome: string;
-  readonly audience: Readonly<Record<CardAudience, string>>;
+  readonly audience: Readonly<Record<Audience, string>>;
   readonly instruction: string;
   /** Two sentences: what is so on the dock, and what to do about it. Common practice, no source. */
   readonly caution: readonly [string, string];

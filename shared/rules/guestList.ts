@@ -8,6 +8,7 @@ import { COLUMN_WORDS, type Column, type Places, placesOf } from './guestList/he
 import { languageOf } from './guestList/languages.ts';
 import { quoted } from './guestList/plainText.ts';
 import { CSV_MAX_ROWS, NAME_MAX } from './limits.ts';
+import { isPlainLine } from './plainLine.ts';
 import { shipInstant, shipTime, type ZoneSpan } from './shipTime.ts';
 
 /** One guest as a list gives them. Null times are the party's. */
@@ -112,8 +113,7 @@ function readLine(
   const name = nameOf(line, places);
   const nameColumn: Column = places.name === undefined ? 'familyName' : 'name';
   if (name === '') return refuse(nameColumn, 'The name is empty. Write the guest’s name, or “withheld”.');
-  // biome-ignore lint/suspicious/noControlCharactersInRegex: the rule is about control characters
-  if (/[\u0000-\u001f\u007f]/.test(name))
+  if (!isPlainLine(name))
     return refuse(nameColumn, 'The name holds a character that cannot be printed. Type it again.');
   if (name.length > NAME_MAX)
     return refuse(nameColumn, `The name is longer than ${NAME_MAX} characters. Shorten it.`);

@@ -8,6 +8,8 @@
 export const PASSPHRASE_MIN = 8;
 /** Longest passphrase, characters 0x20–0x7E. IEEE 802.11-2012 M.4.1; 64 hex digits would be a raw key. */
 export const PASSPHRASE_MAX = 63;
+/** Characters taken where a passphrase is typed: longer than any, so that the answer can say by how much. */
+export const TYPED_MAX = 200;
 /** Longest SSID in UTF-8 octets. IEEE 802.11, SSID element. */
 export const SSID_MAX_OCTETS = 32;
 
@@ -20,7 +22,6 @@ export const GENERATED_BITS_MIN = 64;
 /** Range a network's policy may ask for, in bits. The upper end is what eight words give (common practice, no source). */
 export const POLICY_BITS_MIN = 47;
 export const POLICY_BITS_MAX = 102;
-export const POLICY_BITS_DEFAULT = 64;
 
 /** Age limit of a passphrase, in days (common practice, no source). */
 export const AGE_LIMIT_DAYS_MIN = 1;
@@ -35,7 +36,6 @@ export const NETWORKS_MAX = 24;
 export const ACCESS_POINT_NAME_MAX = 60;
 export const ACCESS_POINTS_MAX = 64;
 export const NOTE_MAX = 500;
-export const REASON_MAX = 200;
 /** Free-text search box. */
 export const SEARCH_MAX = 100;
 
@@ -53,6 +53,8 @@ export const JSON_MAX_BYTES = 256 * 1024;
 /** JSON that carries a party list: base64 takes four characters for three bytes (RFC 4648 section 4), and a little around it. */
 export const LIST_MAX_BYTES = Math.ceil(CSV_MAX_BYTES / 3) * 4 + 1024;
 
+/** Join cards of one print. */
+export const PRINT_MAX = 500;
 /** Rows of one page of a keyed list. */
 export const PAGE_DEFAULT = 50;
 export const PAGE_MAX = 100;
@@ -61,13 +63,10 @@ export const PAGE_MAX = 100;
 export const UNDO_SECONDS = 10;
 /** How long a revealed passphrase stays on the screen, in seconds. */
 export const REVEAL_SECONDS = 30;
-/** How long a guest's data may be kept after departure, in days: range and default of the vessel's setting. */
+/** How long a guest's data may be kept after departure, in days: the range of the vessel's setting. */
 export const RETENTION_DAYS_MIN = 1;
 export const RETENTION_DAYS_MAX = 730;
-export const RETENTION_DAYS_DEFAULT = 90;
 
-/** Characters of a typed passphrase handed to the strength scorer: no passphrase is longer. */
-export const SCORE_MAX = PASSPHRASE_MAX;
 /** Words of the vessel's own that the scorer compares with, and the length of each. */
 export const CONTEXT_WORDS_MAX = 100;
 export const CONTEXT_WORD_MAX = 64;

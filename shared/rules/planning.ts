@@ -1,6 +1,7 @@
 import type { PlanReason } from '../api/rotations.ts';
 import type { Audience } from './permissions.ts';
 import {
+  FIVE_MINUTES_MS,
   freeFrom,
   lastQuiet,
   nextQuiet,
@@ -63,7 +64,6 @@ export const PUT_OFF_MS = 12 * 3_600_000;
 /** The crew's network stays as it is around an arrival. Common practice, no source. */
 const ARRIVAL_MS = 2 * 3_600_000;
 const DAY_MS = 86_400_000;
-const STEP_MS = 5 * 60_000;
 
 interface Candidate {
   readonly at: Date;
@@ -177,7 +177,7 @@ function afterExposure(
         .reduce<Date | null>((last, left) => (last === null ? left : later(last, left)), null);
       let at = roundUp(freeFrom(blocked, lastLeft ? later(floor, settled(input, lastLeft)) : floor));
       while (input.used.has(occurrenceOf('departure', at, input.zones)))
-        at = new Date(at.getTime() + STEP_MS);
+        at = new Date(at.getTime() + FIVE_MINUTES_MS);
       return { at, occurrence: occurrenceOf('departure', at, input.zones), reason };
     }
   }

@@ -110,6 +110,8 @@ function windowsOf(date: Temporal.PlainDate, asked: Asked): Span[] {
     .sort((one, other) => one.from.getTime() - other.from.getTime());
 }
 
-const FIVE_MINUTES = 5 * 60_000;
+/** Changes are planned to five minutes. */
+export const FIVE_MINUTES_MS = 5 * 60_000;
 /** To the next whole five minutes. */
-export const roundUp = (at: Date): Date => new Date(Math.ceil(at.getTime() / FIVE_MINUTES) * FIVE_MINUTES);
+export const roundUp = (at: Date): Date =>
+  new Date(Math.ceil(at.getTime() / FIVE_MINUTES_MS) * FIVE_MINUTES_MS);
