@@ -2,12 +2,10 @@ import { blockHeight, CAP_HEIGHT, type Fitted, fitSentence, fitText, linesHeight
 import { textWidth } from './fonts.ts';
 import { drawFlag, drawNeatline, FLAG_ASPECT } from './marks.ts';
 import { drawNetworkName, drawPassphrase, drawSymbol, fitPassphrase } from './passphrase.ts';
-import { INK, type Pen, RULE, SOFT } from './pen.ts';
+import { INK, MM, type Pen, RULE, SOFT } from './pen.ts';
 import { fitWelcome, type PreparedCard } from './prepared.ts';
 import { must, UnprintableText } from './printable.ts';
 import { type QrRoom, type QrSymbol, QUIET_MODULES, snap } from './qr.ts';
-
-const MM = 72 / 25.4;
 
 /** ISO 216 A6, in points: 105 mm by 148 mm. */
 export const CABIN_SIZE: readonly [number, number] = [105 * MM, 148 * MM];

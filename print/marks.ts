@@ -1,4 +1,4 @@
-import type { CardAudience } from '../shared/messages/card.ts';
+import type { Audience } from '../shared/rules/permissions.ts';
 import { FLAG_BLUE, FLAG_RED, INK, type Pen, WHITE } from './pen.ts';
 
 /** The neatline has a segment for each hour of the day, as on the vessel's pages. */
@@ -27,7 +27,7 @@ export const FLAG_ASPECT = 1.42;
  * An etiquette flag on its staff: plain blue for the owner, blue with a white diagonal for guests,
  * a red pennant for crew. Shapes differ as well as colours, so they read in greyscale.
  */
-export function drawFlag(pen: Pen, audience: CardAudience, x: number, y: number, height: number): void {
+export function drawFlag(pen: Pen, audience: Audience, x: number, y: number, height: number): void {
   const staff = height * 0.085;
   const left = x + staff;
   const right = x + height * FLAG_ASPECT;

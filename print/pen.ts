@@ -25,6 +25,9 @@ export interface Inkwell {
   encode(fontKey: string, run: ReturnType<typeof fontRuns>[number]): { id: string; hex: string };
 }
 
+/** One millimetre in points (72 to the inch). */
+export const MM = 72 / 25.4;
+
 /** A number as a PDF operand: thousandths of a point, no exponent. */
 export function operand(value: number): string {
   return String(Math.round(value * 1000) / 1000);

@@ -1,16 +1,12 @@
-import {
-  CARD_MESSAGES,
-  type CardAudience,
-  type CardLanguage,
-  type CardMessages,
-} from '../shared/messages/card.ts';
+import { CARD_MESSAGES, type CardLanguage, type CardMessages } from '../shared/messages/card.ts';
+import type { Audience } from '../shared/rules/permissions.ts';
 import { type Fitted, fitSentence, fitText, LEADING, type Room } from './fit.ts';
 import { printable } from './printable.ts';
 
 export interface CardInput {
   readonly serial: string;
   readonly vesselName: string;
-  readonly audience: CardAudience;
+  readonly audience: Audience;
   readonly ssid: string;
   readonly passphrase: string;
   /** What the code holds, made by the shared Wi-Fi rules; printed as it is. */
@@ -28,7 +24,7 @@ export interface CardInput {
 export interface PreparedCard {
   readonly serial: string;
   readonly vesselName: string;
-  readonly audience: CardAudience;
+  readonly audience: Audience;
   readonly ssid: string;
   readonly passphrase: string;
   readonly payload: string;

@@ -1,8 +1,6 @@
-import { INK, type Pen } from './pen.ts';
+import { INK, MM, type Pen } from './pen.ts';
 import { snap } from './qr.ts';
 import { WALLET_SIZE } from './wallet.ts';
-
-const MM = 72 / 25.4;
 
 /** ISO 216 A4, in points: 210 mm by 297 mm, exact. Only what stands on the page is snapped. */
 export const A4_SIZE: readonly [number, number] = [210 * MM, 297 * MM];

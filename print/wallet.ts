@@ -2,12 +2,10 @@ import { blockHeight, CAP_HEIGHT, type Fitted, fitSentence, fitText, linesHeight
 import { textWidth, type Weight } from './fonts.ts';
 import { drawFlag, drawNeatline, FLAG_ASPECT } from './marks.ts';
 import { drawNetworkName, drawPassphrase, drawSymbol, fitPassphrase } from './passphrase.ts';
-import { type Colour, INK, type Pen, SOFT } from './pen.ts';
+import { type Colour, INK, MM, type Pen, SOFT } from './pen.ts';
 import { fitWelcome, type PreparedCard } from './prepared.ts';
 import { must, UnprintableText } from './printable.ts';
 import { type QrRoom, type QrSymbol, QUIET_MODULES, snap } from './qr.ts';
-
-const MM = 72 / 25.4;
 
 /** ISO/IEC 7810 ID-1, in points: 85.60 mm by 53.98 mm. */
 export const WALLET_SIZE: readonly [number, number] = [85.6 * MM, 53.98 * MM];
