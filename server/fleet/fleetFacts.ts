@@ -12,7 +12,7 @@ export interface NetworkFacts {
   readonly carriesEquipment: boolean;
   readonly limitDays: number;
   readonly liveAt: Date | null;
-  /** Never leaves the server: presenters turn it into rough words (guard R16). */
+  /** Never leaves the server: presenters turn it into rough words (R16). */
   readonly bits: number | null;
   readonly holders: number;
   readonly departed: number;

@@ -10,7 +10,7 @@ const reasonCodes = z.array(z.looseObject({ code: z.string() }));
 
 /**
  * The words for what holds a change back, or null when nothing does. Reads codes only: anything else in the
- * reasons stays on the vessel (guard R16).
+ * reasons stays on the vessel (R16).
  */
 export function heldWords(reasons: unknown): string | null {
   const parsed = reasonCodes.safeParse(reasons);

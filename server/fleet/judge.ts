@@ -53,7 +53,7 @@ export function fleetFigures(vessels: readonly VesselFacts[], now: Date): FleetF
 /** From the easiest to guess to the hardest, as {@link roughGuess} words them. */
 const GUESS_ORDER = ['seconds', 'minutes', 'hours', 'days', 'months', 'years', 'centuries'];
 
-/** "hours to guess"; null where no passphrase is on record. Only these words may leave (guard R16). */
+/** "hours to guess"; null where no passphrase is on record. Only these words may leave (R16). */
 export function guessWords(network: NetworkFacts): string | null {
   return network.bits === null ? null : roughGuess(network.security, network.bits);
 }

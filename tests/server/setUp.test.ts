@@ -5,7 +5,7 @@ import { afterAll, beforeAll, describe, expect, inject, test } from 'vitest';
 import { checkNode, SetUpError } from '../../server/bin/setUp.mjs';
 import { ask, freePorts, listening, quickDatabase, said, started, testFolder } from '../support/programs.ts';
 
-// Source of everything here: house.md's standing commands, "explains itself when something is missing".
+// The project's own rule for its standing commands: each explains itself when something is missing.
 
 const folder = testFolder();
 

@@ -4,7 +4,7 @@ import path from 'node:path';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
 import { ask, listening, quickDatabase, started, testFolder } from '../support/programs.ts';
 
-// Source: house.md's `npm start`, "starts PostgreSQL on loopback"; common practice, no source, for the rest.
+// The project's own rule for `npm start` (PostgreSQL on loopback only); common practice, no source, for the rest.
 
 const folder = testFolder();
 

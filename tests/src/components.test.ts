@@ -5,7 +5,7 @@ import { passphraseParts } from '../../src/components/passphraseWords.ts';
 import { QUIET_ZONE, qrPath } from '../../src/components/qrPath.ts';
 
 describe('an age scale', () => {
-  // look/networks.png: 90-180-270 below 365, 7 below 14, 15-30 below 45.
+  // The project's own design: 90-180-270 below 365, 7 below 14, 15-30 below 45.
   test.each([
     [365, [90, 180, 270]],
     [14, [7]],

@@ -2,6 +2,9 @@ import { execFile } from 'node:child_process';
 import { promisify } from 'node:util';
 import { QueryTypes } from 'sequelize';
 import { expect } from 'vitest';
+import type { Place } from '../../server/db/vault.ts';
+import { isMailKind, type MailData, writeMail } from '../../server/mail/messages.ts';
+import { outboxPlace } from '../../server/mail/queueMail.ts';
 import { secretPlace } from '../../server/passphrases/sealPassphrase.ts';
 import type { TestApp } from './app.ts';
 
@@ -23,8 +26,40 @@ interface SecretRow {
   sealed: Buffer;
 }
 
-/** Every passphrase the database holds, opened with the test's own keys: the markers nobody else may have. */
-async function markers(test: TestApp): Promise<string[]> {
+/** Sealed texts of a query's rows (id, key_id, sealed), opened where they can be. */
+async function opened(test: TestApp, sql: string, place: (id: string) => Place): Promise<string[]> {
+  const rows = await system<{ id: string; key_id: string; sealed: Buffer }>(test, sql);
+  return rows.flatMap((row) => {
+    try {
+      return [test.services.vault.open(place(row.id), { keyId: row.key_id, sealed: row.sealed })];
+    } catch {
+      return [];
+    }
+  });
+}
+
+/** Second factors' seeds and one-time tokens that lie sealed, and the ids of sessions these clients used. */
+async function tokens(test: TestApp): Promise<string[]> {
+  const seeds = await opened(
+    test,
+    'SELECT id, totp_key_id AS key_id, totp_secret AS sealed FROM people WHERE totp_secret IS NOT NULL',
+    (rowId) => ({ table: 'people', column: 'totp_secret', rowId }),
+  );
+  const mailed = await opened(
+    test,
+    'SELECT id, key_id, sealed FROM mail_outbox WHERE sealed IS NOT NULL',
+    outboxPlace,
+  );
+  for (const { sessionId } of test.recorded) if (sessionId) test.sessionIds.add(sessionId);
+  return [...seeds, ...mailed, ...test.sessionIds];
+}
+
+/** Every secret the database holds, opened with the test's own keys: the markers nobody else may have. */
+export async function markers(test: TestApp): Promise<string[]> {
+  return [...(await passphrases(test)), ...(await tokens(test))];
+}
+
+async function passphrases(test: TestApp): Promise<string[]> {
   const rows = await system<SecretRow>(
     test,
     `SELECT p.id, p.vessel_id, p.network_id, p.generation, s.key_id, s.sealed
@@ -55,7 +90,7 @@ function system<T extends object>(test: TestApp, sql: string): Promise<T[]> {
   return test.services.db.transaction({ kind: 'system' }, (tx) => test.services.db.rows<T>(tx, sql));
 }
 
-/** The forms in which a secret could hide in a text (guard R25). */
+/** The forms in which a secret could hide in a text (R25). */
 export function disguises(secret: string): string[] {
   const octets = Buffer.from(secret, 'utf8');
   return [
@@ -66,32 +101,47 @@ export function disguises(secret: string): string[] {
     encodeURIComponent(secret),
     JSON.stringify(secret).slice(1, -1),
     [...secret].reverse().join(''),
+    Buffer.from(secret, 'utf16le').toString('latin1'),
   ];
 }
 
-function findIn(text: string, secrets: readonly string[]): boolean {
+/** Whether the text holds one of the secrets in any of its forms. */
+export function findIn(text: string, secrets: readonly string[]): boolean {
   return secrets.some((secret) => disguises(secret).some((form) => text.includes(form)));
 }
 
-/** G1: no passphrase in the log lines, mails, job rows, the log of handovers, error bodies, addresses or any dealer's answer. */
+/** R28: each mail of the outbox as it reads, without its one-time token. */
+async function mails(test: TestApp): Promise<{ sink: string; text: string }[]> {
+  const rows = await system<{ kind: string; data: MailData[keyof MailData] }>(
+    test,
+    'SELECT kind, data FROM mail_outbox',
+  );
+  return rows.flatMap(({ kind, data }) => {
+    if (!isMailKind(kind)) return [];
+    const mail = writeMail(kind, data as never, { publicUrl: test.origin, secret: null });
+    return [{ sink: `mail of ${kind}`, text: `${mail.subject}\n${mail.text}\n${mail.html}` }];
+  });
+}
+
+/** G1: no secret in the log lines, mails, job rows, the log of handovers, error bodies, addresses or any dealer's answer. */
 async function nothingLeaked(test: TestApp, recorded: readonly Recorded[]): Promise<void> {
   const secrets = await markers(test);
   const dealers = await dealerSessions(test, recorded);
   const names = dealers.size > 0 ? await guestNames(test) : [];
   for (const answer of recorded) {
     const where = `${answer.method} ${answer.path} answered ${answer.status}`;
-    expect(findIn(answer.path, secrets), `G1: a passphrase in the address: ${where}`).toBe(false);
+    expect(findIn(answer.path, secrets), `G1: a secret in the address: ${where}`).toBe(false);
     if (answer.status >= 400)
-      expect(findIn(answer.text, secrets), `G1: a passphrase in an error: ${where}`).toBe(false);
+      expect(findIn(answer.text, secrets), `G1: a secret in an error: ${where}`).toBe(false);
     if (answer.sessionId && dealers.has(answer.sessionId)) {
-      expect(findIn(answer.text, secrets), `G1: a passphrase for a dealer: ${where}`).toBe(false);
+      expect(findIn(answer.text, secrets), `G1: a secret for a dealer: ${where}`).toBe(false);
       expect(
         names.filter((name) => answer.text.includes(name)),
         `G1: a guest's name for a dealer: ${where}`,
       ).toEqual([]);
     }
   }
-  expect(findIn(test.logged(), secrets), 'G1: a passphrase in the log lines').toBe(false);
+  expect(findIn(test.logged(), secrets), 'G1: a secret in the log lines').toBe(false);
   const sinks = await system<{ sink: string; text: string }>(
     test,
     `SELECT 'mail' AS sink, data::text || coalesce(last_error, '') || message_key AS text FROM mail_outbox
@@ -99,8 +149,8 @@ async function nothingLeaked(test: TestApp, recorded: readonly Recorded[]): Prom
      UNION ALL SELECT 'idempotency key', coalesce(response::text, '') FROM idempotency_keys
      UNION ALL SELECT 'log entry', body::text FROM log_entries`,
   );
-  for (const { sink, text } of sinks)
-    expect(findIn(text, secrets), `G1: a passphrase in a ${sink}`).toBe(false);
+  for (const { sink, text } of [...sinks, ...(await mails(test))])
+    expect(findIn(text, secrets), `G1: a secret in a ${sink}`).toBe(false);
 }
 
 async function dealerSessions(test: TestApp, recorded: readonly Recorded[]): Promise<Set<string>> {
@@ -163,8 +213,22 @@ async function nothingHeld(test: TestApp): Promise<void> {
   expect(left, 'G5: something was left open').toEqual([]);
 }
 
+/** Promises nobody waited for, since the process began. */
+const unhandled: string[] = [];
+process.on('unhandledRejection', (reason) => {
+  unhandled.push(reason instanceof Error ? `${reason.name}: ${reason.message}` : String(reason));
+});
+
+/** G4: every promise was waited for. */
+async function nothingUnhandled(): Promise<void> {
+  // The process tells of a rejection only once its microtasks are through.
+  await new Promise((next) => setImmediate(next));
+  expect(unhandled.splice(0), 'G4: a promise was rejected and nobody waited for it').toEqual([]);
+}
+
 /** Run after every server test: the oracles of the guard that a single test cannot forget. */
 export async function oracles(test: TestApp, recorded: readonly Recorded[]): Promise<void> {
+  await nothingUnhandled();
   await nothingLeaked(test, recorded);
   await rotationsHold(test);
   await nothingHeld(test);
@@ -176,9 +240,15 @@ const run = promisify(execFile);
 export async function dumpHoldsNoSecret(test: TestApp): Promise<void> {
   const secrets = await markers(test);
   if (secrets.length === 0) return;
-  const { stdout } = await run('pg_dump', ['--enable-row-security', '--inserts', test.ownerUrl], {
+  expect(findIn(await dump(test, '--inserts'), secrets), 'G1: a secret in the database dump').toBe(false);
+}
+
+/** The whole database as pg_dump writes it in a format, read octet by octet. */
+export async function dump(test: TestApp, ...format: string[]): Promise<string> {
+  const { stdout } = await run('pg_dump', ['--enable-row-security', ...format, test.ownerUrl], {
     maxBuffer: 512 * 1024 * 1024,
+    encoding: 'latin1',
     env: { ...process.env, PATH: `${process.env.PATH}:/usr/lib/postgresql/15/bin` },
   });
-  expect(findIn(stdout, secrets), 'G1: a passphrase in the database dump').toBe(false);
+  return stdout;
 }

@@ -7,7 +7,7 @@ import {
   reasonWords,
 } from '../../../../src/features/networks/reasonWords.ts';
 
-// Wording is the project's own (job.md, "A week"); instants are read in Split, UTC+2 in June (IANA Europe/Zagreb).
+// Wording is the project's own; instants are read in Split, UTC+2 in June (IANA Europe/Zagreb).
 const context: ReasonContext = {
   zone: 'Europe/Zagreb',
   now: new Date('2026-06-14T12:12:00Z'),

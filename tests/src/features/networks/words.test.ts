@@ -6,7 +6,7 @@ import {
 } from '../../../../src/features/networks/policyWords.ts';
 import { awaitsEntry, holdersWords, leakWords } from '../../../../src/features/networks/words.ts';
 
-// Wording is the project's own (job.md, "Words"); the picture of the networks page has "14 people hold it, 2 have signed off".
+// Wording is the project's own: "14 people hold it, 2 have signed off".
 describe('who holds a passphrase', () => {
   test('the departed stand in a clause of their own', () => {
     expect(holdersWords({ audience: 'crew', holders: { current: 12, departed: 2 } })).toEqual({
