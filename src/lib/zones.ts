@@ -44,7 +44,7 @@ const plain = (text: string) =>
   text.normalize('NFD').replace(/\p{M}/gu, '').toLowerCase().replaceAll(/[_/]/g, ' ').replaceAll('−', '-');
 
 /**
- * The zones whose name, country or offset holds every word searched for; names that begin with the search come
+ * The zones whose name, country or offset holds every word searched for; those that begin with the search come
  * first. `at` is when the offset is asked for.
  */
 export function searchZones(search: string, at: Date, limit: number): { shown: Zone[]; matching: number } {
@@ -57,9 +57,10 @@ export function searchZones(search: string, at: Date, limit: number): { shown: Z
       : '';
     if (!words.every((word) => text.includes(word) || word === offset)) continue;
     const parts = text.split(' ');
-    const rank = words.every((word) => word === offset || parts.some((part) => part.startsWith(word)))
-      ? 0
-      : 1;
+    const isStart = words.every((word) => word === offset || parts.some((part) => part.startsWith(word)));
+    // Who searches for an offset means the offset first, then the places that happen to keep it.
+    const isOffset = words.includes(offset) && FIXED.includes(zone);
+    const rank = isOffset ? 0 : isStart ? 1 : 2;
     found.push({ zone, rank });
   }
   found.sort((a, b) => a.rank - b.rank);
