@@ -3,6 +3,7 @@ import { type LoaderFunctionArgs, useParams, useSearchParams } from 'react-route
 import { LOG_KINDS } from '../../shared/rules/logKinds.ts';
 import { may } from '../../shared/rules/permissions.ts';
 import { Button } from '../components/Button.tsx';
+import { ErrorLine } from '../components/ErrorLine.tsx';
 import { Select, TextInput } from '../components/inputs.tsx';
 import { Page, Section } from '../components/Page.tsx';
 import { Empty, Failed, Loading, PageState, TooMany } from '../components/PageState.tsx';
@@ -13,7 +14,6 @@ import { Holders } from '../features/log/Holders.tsx';
 import { LogList } from '../features/log/LogList.tsx';
 import { exportLog, holdersQuery, type LogWish, logQuery } from '../features/log/queries.ts';
 import { vesselQuery } from '../features/vessels/queries.ts';
-import { sentenceFor } from '../lib/errors.ts';
 import { startLoad } from '../lib/queryClient.ts';
 import { fromLocal } from '../lib/shipLocal.ts';
 import { useTitle } from '../lib/useTitle.ts';
@@ -86,11 +86,7 @@ export function LogPage() {
           </Attention>
         )}
       </Sentence>
-      {csv.error ? (
-        <p role="alert" className="font-medium text-magenta">
-          {sentenceFor(csv.error)}
-        </p>
-      ) : null}
+      <ErrorLine error={csv.error} />
       <Section title="Who holds what now">
         <PageState
           query={holders}

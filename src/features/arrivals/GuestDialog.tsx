@@ -5,10 +5,12 @@ import type { Language } from '../../../shared/api/common.ts';
 import { NAME_MAX } from '../../../shared/rules/limits.ts';
 import { Button } from '../../components/Button.tsx';
 import { Dialog } from '../../components/Dialog.tsx';
+import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { Checkbox, Select, TextInput } from '../../components/inputs.tsx';
 import { useNotices } from '../../components/Notices.tsx';
-import { fieldError, namesFields, sentenceFor } from '../../lib/errors.ts';
-import { guestCalled, LANGUAGE_CHOICES } from './guestWords.ts';
+import { fieldError } from '../../lib/errors.ts';
+import { LANGUAGE_CHOICES } from '../../lib/languages.ts';
+import { guestCalled } from './guestWords.ts';
 import { addGuest, arrivalsKey, changeGuest, eraseGuest, type GuestChange, removeGuest } from './queries.ts';
 
 interface GuestDialogProps {
@@ -94,11 +96,7 @@ export function GuestDialog({ vesselId, arrivals, guest, partyId, onClose }: Gue
           options={LANGUAGE_CHOICES}
         />
         <Checkbox label="Under 16" checked={under16} onChange={(event) => setUnder16(event.target.checked)} />
-        {error && !namesFields(error) ? (
-          <p role="alert" className="text-sm font-medium text-magenta">
-            {sentenceFor(error)}
-          </p>
-        ) : null}
+        <ErrorLine error={error} fieldsShown />
         <div className="flex flex-wrap items-center gap-3">
           <Button type="submit" kind="primary" busy={save.isPending && 'Saving…'}>
             {guest ? 'Save' : 'Add'}

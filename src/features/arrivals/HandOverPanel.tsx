@@ -6,6 +6,7 @@ import { CARD_LANGUAGES, CARD_MESSAGES } from '../../../shared/messages/card.ts'
 import { Button } from '../../components/Button.tsx';
 import { Caution } from '../../components/Caution.tsx';
 import { DateTime } from '../../components/DateTime.tsx';
+import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { useNotices } from '../../components/Notices.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { Segmented } from '../../components/Segmented.tsx';
@@ -133,11 +134,7 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
           </button>
         }
       />
-      {peek.stage.kind === 'failed' ? (
-        <p role="alert" className="text-sm font-medium text-magenta">
-          {sentenceFor(peek.stage.error)}
-        </p>
-      ) : null}
+      {peek.stage.kind === 'failed' ? <ErrorLine error={peek.stage.error} /> : null}
       <Segmented
         label="Language of the card"
         value={language}
@@ -167,11 +164,7 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
       {guest.under16 ? (
         <p className="text-sm text-soft">Under 16: hand the card to a parent, or ask one first.</p>
       ) : null}
-      {failed ? (
-        <p role="alert" className="text-sm font-medium text-magenta">
-          {sentenceFor(failed)}
-        </p>
-      ) : null}
+      <ErrorLine error={failed} />
       <div className="mt-auto flex flex-col gap-2.5">
         {guest.ashoreAt ? null : (
           <>

@@ -4,6 +4,7 @@ import type { ArrivalsView, PartyForm } from '../../../shared/api/arrivals.ts';
 import { CSV_MAX_BYTES } from '../../../shared/rules/limits.ts';
 import { Button } from '../../components/Button.tsx';
 import { Caution } from '../../components/Caution.tsx';
+import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { Field } from '../../components/Field.tsx';
 import { Select, TextArea } from '../../components/inputs.tsx';
 import { Section } from '../../components/Page.tsx';
@@ -199,11 +200,7 @@ export function ImportList({ vesselId, arrivals, partyId, onAdded }: ImportListP
                 }}
               />
             ) : null}
-            {add.error ? (
-              <p role="alert" className="font-medium text-magenta">
-                {sentenceFor(add.error)}
-              </p>
-            ) : null}
+            <ErrorLine error={add.error} />
             <Button
               kind="primary"
               size="large"

@@ -6,9 +6,9 @@ import { Button } from '../../components/Button.tsx';
 import { Caution } from '../../components/Caution.tsx';
 import { DateTime } from '../../components/DateTime.tsx';
 import { Dialog } from '../../components/Dialog.tsx';
+import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { RadioRow } from '../../components/inputs.tsx';
 import { PageState } from '../../components/PageState.tsx';
-import { sentenceFor } from '../../lib/errors.ts';
 import { arrivalsKey, type CardOutcome, cardsOutQuery, partyAshore } from './queries.ts';
 
 interface PartyAshoreDialogProps {
@@ -123,11 +123,7 @@ export function PartyAshoreDialog({ vesselId, arrivals, party, onClose }: PartyA
           </>
         )}
       </PageState>
-      {gone.error ? (
-        <p role="alert" className="text-sm font-medium text-magenta">
-          {sentenceFor(gone.error)}
-        </p>
-      ) : null}
+      <ErrorLine error={gone.error} />
     </Dialog>
   );
 }

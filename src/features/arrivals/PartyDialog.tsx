@@ -4,9 +4,10 @@ import type { PartyForm, PartyView } from '../../../shared/api/arrivals.ts';
 import { NAME_MAX } from '../../../shared/rules/limits.ts';
 import { Button } from '../../components/Button.tsx';
 import { Dialog } from '../../components/Dialog.tsx';
+import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { TextInput } from '../../components/inputs.tsx';
 import { serverNow } from '../../lib/clock.ts';
-import { fieldError, namesFields, sentenceFor } from '../../lib/errors.ts';
+import { fieldError } from '../../lib/errors.ts';
 import { fromLocal, toLocal } from '../../lib/shipLocal.ts';
 import { arrivalsKey, saveParty } from './queries.ts';
 
@@ -127,11 +128,7 @@ export function PartyDialog({ vesselId, zone, party, onClose, onSaved }: PartyDi
             leaves: errors.leaves ?? fieldError(save.error, 'leavesAt'),
           }}
         />
-        {save.error && !namesFields(save.error) ? (
-          <p role="alert" className="text-sm font-medium text-magenta">
-            {sentenceFor(save.error)}
-          </p>
-        ) : null}
+        <ErrorLine error={save.error} fieldsShown />
         <Button type="submit" kind="primary" className="self-start" busy={save.isPending && 'Saving…'}>
           Save
         </Button>

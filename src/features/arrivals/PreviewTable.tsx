@@ -4,8 +4,8 @@ import { BOX } from '../../components/Field.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { Table, Td, Th } from '../../components/Table.tsx';
 import { useNow } from '../../lib/clock.ts';
+import { LANGUAGE_CHOICES } from '../../lib/languages.ts';
 import { shipDateTime } from '../../lib/shipTime.ts';
-import { LANGUAGE_CHOICES } from './guestWords.ts';
 import type { PreviewRow } from './listRows.ts';
 
 interface PreviewTableProps {

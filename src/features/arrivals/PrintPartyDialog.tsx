@@ -4,9 +4,9 @@ import type { ArrivalsView } from '../../../shared/api/arrivals.ts';
 import type { CardFormat } from '../../../shared/api/common.ts';
 import { Button } from '../../components/Button.tsx';
 import { Dialog } from '../../components/Dialog.tsx';
+import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { Checkbox, RadioRow } from '../../components/inputs.tsx';
 import { useNotices } from '../../components/Notices.tsx';
-import { sentenceFor } from '../../lib/errors.ts';
 import { arrivalsKey, printCards } from './queries.ts';
 
 const FORMATS: readonly { value: CardFormat; label: string; hint: string }[] = [
@@ -80,11 +80,7 @@ export function PrintPartyDialog({
       <p className="text-sm text-soft">
         Each card is in its guest's language, or in English where cards are not printed in it.
       </p>
-      {print.error ? (
-        <p role="alert" className="text-sm font-medium text-magenta">
-          {sentenceFor(print.error)}
-        </p>
-      ) : null}
+      <ErrorLine error={print.error} />
     </Dialog>
   );
 }

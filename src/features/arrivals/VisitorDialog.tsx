@@ -5,11 +5,12 @@ import type { Language } from '../../../shared/api/common.ts';
 import { NAME_MAX } from '../../../shared/rules/limits.ts';
 import { Button } from '../../components/Button.tsx';
 import { Dialog } from '../../components/Dialog.tsx';
+import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { Checkbox, Select, TextInput } from '../../components/inputs.tsx';
 import { serverNow } from '../../lib/clock.ts';
-import { fieldError, namesFields, sentenceFor } from '../../lib/errors.ts';
+import { fieldError } from '../../lib/errors.ts';
+import { LANGUAGE_CHOICES } from '../../lib/languages.ts';
 import { fromLocal, toLocal } from '../../lib/shipLocal.ts';
-import { LANGUAGE_CHOICES } from './guestWords.ts';
 import { addVisitor, arrivalsKey, type NewVisitor } from './queries.ts';
 
 interface VisitorDialogProps {
@@ -72,11 +73,7 @@ export function VisitorDialog({ vesselId, arrivals, onClose, onAdded }: VisitorD
           options={LANGUAGE_CHOICES}
         />
         <Checkbox label="Under 16" checked={under16} onChange={(event) => setUnder16(event.target.checked)} />
-        {add.error && !namesFields(add.error) ? (
-          <p role="alert" className="text-sm font-medium text-magenta">
-            {sentenceFor(add.error)}
-          </p>
-        ) : null}
+        <ErrorLine error={add.error} fieldsShown />
         <Button type="submit" kind="primary" className="self-start" busy={add.isPending && 'Adding…'}>
           Add
         </Button>

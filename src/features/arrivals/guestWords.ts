@@ -1,25 +1,7 @@
 import type { GuestView } from '../../../shared/api/arrivals.ts';
 import type { CardLanguage, Language } from '../../../shared/api/common.ts';
 import { CARD_LANGUAGES } from '../../../shared/messages/card.ts';
-
-/** A language's name in English, for staff. */
-export const LANGUAGE_NAMES: Readonly<Record<Language, string>> = {
-  en: 'English',
-  fr: 'French',
-  it: 'Italian',
-  es: 'Spanish',
-  de: 'German',
-  pt: 'Portuguese',
-  nl: 'Dutch',
-  el: 'Greek',
-  ru: 'Russian',
-  tr: 'Turkish',
-  ar: 'Arabic',
-  zh: 'Chinese',
-  ja: 'Japanese',
-};
-
-export const LANGUAGE_CHOICES = Object.entries(LANGUAGE_NAMES).map(([value, label]) => ({ value, label }));
+import { LANGUAGE_NAMES } from '../../lib/languages.ts';
 
 /** The language of somebody's card: their own where cards are printed in it, else English. */
 export function cardLanguageOf(language: Language): CardLanguage {

@@ -6,9 +6,9 @@ import { Button } from '../../components/Button.tsx';
 import { Select, TextInput } from '../../components/inputs.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { fieldError } from '../../lib/errors.ts';
+import { OWN_LANGUAGE_CHOICES } from '../../lib/languages.ts';
 import { rolesInWords } from '../../lib/roleWords.ts';
 import { FormError } from './FormError.tsx';
-import { LANGUAGES } from './languages.ts';
 import { NewPasswordField } from './NewPasswordField.tsx';
 
 interface InvitationFormProps {
@@ -59,7 +59,7 @@ export function InvitationForm({ invitation, error, busy, onAccept }: Invitation
           />
           <Select
             label="Language of mails to you"
-            options={LANGUAGES}
+            options={OWN_LANGUAGE_CHOICES}
             value={locale}
             onChange={(event) => setLocale(event.target.value as Language)}
             error={fieldError(error, 'locale')}

@@ -7,8 +7,8 @@ import { Button } from '../../components/Button.tsx';
 import { Select, TextInput } from '../../components/inputs.tsx';
 import { useNotices } from '../../components/Notices.tsx';
 import { fieldError } from '../../lib/errors.ts';
+import { OWN_LANGUAGE_CHOICES } from '../../lib/languages.ts';
 import { FormError } from './FormError.tsx';
-import { LANGUAGES } from './languages.ts';
 import { savePerson, sessionQuery } from './queries.ts';
 
 /** A person's own name and language. */
@@ -42,7 +42,7 @@ export function PersonForm({ person }: { person: SessionView['person'] }) {
       <Select
         label="Language"
         hint="For mails to you. Screens are in English for now."
-        options={LANGUAGES}
+        options={OWN_LANGUAGE_CHOICES}
         value={locale}
         onChange={(event) => setLocale(event.target.value as Language)}
         error={fieldError(save.error, 'locale')}

@@ -5,25 +5,14 @@ import { type CrewBody, type CrewView, crewBody } from '../../../shared/api/crew
 import { EMAIL_MAX, NAME_MAX } from '../../../shared/rules/limits.ts';
 import { Button } from '../../components/Button.tsx';
 import { Dialog } from '../../components/Dialog.tsx';
+import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { Select, TextInput } from '../../components/inputs.tsx';
 import { serverNow } from '../../lib/clock.ts';
-import { fieldError, namesFields, sentenceFor } from '../../lib/errors.ts';
+import { fieldError } from '../../lib/errors.ts';
 import { checkForm } from '../../lib/forms.ts';
+import { LANGUAGE_CHOICES } from '../../lib/languages.ts';
 import { fromLocal, toLocal } from '../../lib/shipLocal.ts';
 import { crewQuery, saveCrew } from './queries.ts';
-
-const LANGUAGES: readonly { value: Language; label: string }[] = [
-  { value: 'en', label: 'English' },
-  { value: 'fr', label: 'French' },
-  { value: 'it', label: 'Italian' },
-  { value: 'es', label: 'Spanish' },
-  { value: 'de', label: 'German' },
-  { value: 'pt', label: 'Portuguese' },
-  { value: 'nl', label: 'Dutch' },
-  { value: 'el', label: 'Greek' },
-  { value: 'ru', label: 'Russian' },
-  { value: 'tr', label: 'Turkish' },
-];
 
 interface CrewDialogProps {
   vesselId: string;
@@ -105,7 +94,7 @@ export function CrewDialog({ vesselId, zone, member, onClose }: CrewDialogProps)
         <Select
           label="Language"
           value={form.language}
-          options={LANGUAGES}
+          options={LANGUAGE_CHOICES}
           onChange={set('language')}
           error={fieldError(error, 'language')}
         />
@@ -116,11 +105,7 @@ export function CrewDialog({ vesselId, zone, member, onClose }: CrewDialogProps)
           onChange={set('signedOn')}
           error={fieldError(error, 'signedOnAt')}
         />
-        {error && !namesFields(error) ? (
-          <p role="alert" className="text-sm font-medium text-magenta sm:col-span-2">
-            {sentenceFor(error)}
-          </p>
-        ) : null}
+        <ErrorLine error={error} fieldsShown className="sm:col-span-2" />
         <Button
           type="submit"
           kind="primary"

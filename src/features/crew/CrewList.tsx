@@ -4,6 +4,7 @@ import type { CrewView } from '../../../shared/api/crew.ts';
 import { Button } from '../../components/Button.tsx';
 import { DateTime } from '../../components/DateTime.tsx';
 import { Dialog } from '../../components/Dialog.tsx';
+import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { useNotices } from '../../components/Notices.tsx';
 import { Section } from '../../components/Page.tsx';
 import { Empty } from '../../components/PageState.tsx';
@@ -226,11 +227,7 @@ function SignOffDialog({ vesselId, zone, member, onClose }: SignOffDialogProps) 
         )}{' '}
         {member.account ? 'Their sign-in to this vessel ends at once.' : null}
       </p>
-      {off.error ? (
-        <p role="alert" className="text-sm font-medium text-magenta">
-          {sentenceFor(off.error)}
-        </p>
-      ) : null}
+      <ErrorLine error={off.error} />
     </Dialog>
   );
 }

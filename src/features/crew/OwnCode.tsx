@@ -3,11 +3,11 @@ import { useCallback } from 'react';
 import type { OwnPage } from '../../../shared/api/crew.ts';
 import { Button } from '../../components/Button.tsx';
 import { DateTime } from '../../components/DateTime.tsx';
+import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { Flag } from '../../components/Flag.tsx';
 import { PassphraseWords } from '../../components/Passphrase.tsx';
 import { QrCode } from '../../components/QrCode.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
-import { sentenceFor } from '../../lib/errors.ts';
 import { useSecret } from '../../lib/useSecret.ts';
 import { ownPageQuery, readOwnCode } from './queries.ts';
 
@@ -97,11 +97,7 @@ export function OwnCode({ vesselId, zone, network }: OwnCodeProps) {
           </p>
         </>
       ) : null}
-      {stage.kind === 'failed' ? (
-        <p role="alert" className="text-sm font-medium text-magenta">
-          {sentenceFor(stage.error)}
-        </p>
-      ) : null}
+      {stage.kind === 'failed' ? <ErrorLine error={stage.error} /> : null}
     </section>
   );
 }

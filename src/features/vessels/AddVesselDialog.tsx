@@ -4,9 +4,10 @@ import { type NewVesselBody, newVesselBody } from '../../../shared/api/vessels.t
 import { EMAIL_MAX, NAME_MAX } from '../../../shared/rules/limits.ts';
 import { Button } from '../../components/Button.tsx';
 import { Dialog } from '../../components/Dialog.tsx';
+import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { TextInput } from '../../components/inputs.tsx';
 import { ZonePicker } from '../../components/ZonePicker.tsx';
-import { fieldError, namesFields, sentenceFor } from '../../lib/errors.ts';
+import { fieldError } from '../../lib/errors.ts';
 import { checkForm } from '../../lib/forms.ts';
 import { useFocusInvalid } from '../../lib/useFocusInvalid.ts';
 import { addVessel, type NewVessel } from './queries.ts';
@@ -74,11 +75,7 @@ export function AddVesselDialog({ onClose, onAdded }: AddVesselDialogProps) {
           maxLength={EMAIL_MAX}
           className="sm:col-span-2"
         />
-        {error && !namesFields(error) ? (
-          <p role="alert" className="text-sm font-medium text-magenta sm:col-span-2">
-            {sentenceFor(error)}
-          </p>
-        ) : null}
+        <ErrorLine error={error} fieldsShown className="sm:col-span-2" />
         <Button
           type="submit"
           kind="primary"
