@@ -121,7 +121,8 @@ describe("somebody's own server, named by DATABASE_URL", () => {
   });
 });
 
-describe('npm start', () => {
+// Each starts everything, and may have to build the client first.
+describe('npm start', { timeout: 120_000 }, () => {
   const dir = path.join(folder, 'start');
   let env: NodeJS.ProcessEnv;
   let port: number;
