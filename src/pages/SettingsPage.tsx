@@ -144,8 +144,8 @@ function SettingsSentence({ settings, roles }: { settings: VesselSettings; roles
   const yours = may(roles, 'vessel.edit')
     ? 'All of it is yours to change.'
     : may(roles, 'networks.edit')
-      ? 'The access points and where she lies are yours to change, the rest is the captain's.'
-      : 'Where she lies is yours to change, the rest is the captain's.';
+      ? "The access points and where she lies are yours to change, the rest is the captain's."
+      : "Where she lies is yours to change, the rest is the captain's.";
   if (accessPoints.length === 0) {
     return (
       <>

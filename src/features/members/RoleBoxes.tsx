@@ -7,9 +7,9 @@ const HINTS: Record<VesselRole, string> = {
   captain: 'Everything of the vessel, and who may do what.',
   chief_stew: 'Guests, crew list, and changes of the guest and crew networks.',
   purser: 'Guests, arrivals, cards and the log.',
-  eto: 'Networks and access points, without guests' names.',
-  crew: 'Their own page with the crew network's code, and nothing else.',
-  owner_keeper: 'Beside another role: may see and hand out the owner network's passphrase.',
+  eto: "Networks and access points, without guests' names.",
+  crew: "Their own page with the crew network's code, and nothing else.",
+  owner_keeper: "Beside another role: may see and hand out the owner network's passphrase.",
 };
 
 interface RoleBoxesProps {
