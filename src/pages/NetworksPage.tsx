@@ -94,6 +94,7 @@ export function NetworksPage() {
                         {...{ vesselId, network }}
                         primary={network === worst}
                         mayEnter={may(roles, 'rotation.enter')}
+                        held={network.carriesEquipment && crossingUntil !== null}
                         onAsk={setAsked}
                       />
                     }
@@ -160,11 +161,13 @@ interface ActionsProps {
   /** The one that needs it. */
   primary: boolean;
   mayEnter: boolean;
+  /** A crossing keeps its equipment from losing their link: it can only be planned. */
+  held: boolean;
   onAsk: (asked: Asked) => void;
 }
 
 /** What can be done with a network now: change or plan it, or go on with the change that is under way. */
-function Actions({ vesselId, network, primary, mayEnter, onAsk }: ActionsProps) {
+function Actions({ vesselId, network, primary, mayEnter, held, onAsk }: ActionsProps) {
   const now = useNow();
   const { change } = network;
   const started = change !== null && hasStarted(change);
@@ -183,7 +186,7 @@ function Actions({ vesselId, network, primary, mayEnter, onAsk }: ActionsProps) 
       ) : null}
       {network.may.plan && !entry ? (
         <Button
-          kind={primary ? 'primary' : 'secondary'}
+          kind={primary && !held ? 'primary' : 'secondary'}
           aria-label={`Change now, ${called}`}
           onClick={() => onAsk({ what: 'change', networkId: network.id })}
         >

@@ -12,6 +12,7 @@ type Matter =
   | 'drifted'
   | 'exposed'
   | 'overdue'
+  | 'weak'
   | 'unrecorded'
   | 'waiting'
   | 'under_way'
@@ -25,6 +26,7 @@ export function matterOf(network: NetworkView, now: Date): Matter | null {
   if (drift) return 'drifted';
   if (standing === 'exposed') return 'exposed';
   if (standing === 'overdue') return 'overdue';
+  if (live?.grade === 'weak') return 'weak';
   if (live === null) return 'unrecorded';
   if (change && awaitsEntry(change, now)) return 'waiting';
   if (change && hasStarted(change)) return 'under_way';
@@ -37,6 +39,7 @@ const ORDER: readonly Matter[] = [
   'drifted',
   'exposed',
   'overdue',
+  'weak',
   'unrecorded',
   'waiting',
   'under_way',
@@ -103,6 +106,12 @@ export function NetworkSentence({ network, zone }: { network: NetworkView; zone:
       return (
         <>
           {name} is <Attention>past its limit</Attention> of {network.policy.ageLimitDays} days. {next}
+        </>
+      );
+    case 'weak':
+      return (
+        <>
+          {name} has a <Attention>weak</Attention> passphrase: {network.live?.strength}. {next}
         </>
       );
     case 'unrecorded':

@@ -18,7 +18,7 @@ export const SECURITY_WORDS: Record<Security, string> = {
 
 export const GRADE_WORDS = { weak: 'weak', fair: 'fair', strong: 'strong' } as const;
 
-export const people = (count: number): string => (count === 1 ? '1 person' : `${count} people`);
+const people = (count: number): string => (count === 1 ? '1 person' : `${count} people`);
 
 /** What people of an audience do when they leave: "2 have signed off". */
 export const LEFT: Record<Audience, string> = { owner: 'left', guest: 'left', crew: 'signed off' };
