@@ -11,7 +11,8 @@ export const cardRoutes: readonly Endpoint[] = [
     handle: (context) => previewCard(context, context.params.networkId, context.body),
   }),
   endpoint(api.showCode, {
-    handle: (context) => showCode(context, context.params.networkId, context.params.guestId),
+    handle: (context) =>
+      showCode(context, context.params.networkId, context.params.guestId, context.body.language),
   }),
   endpoint(api.printCards, {
     handle: (context) => printCards(context, context.params.networkId, context.body),

@@ -1,5 +1,5 @@
 import type { ShownCode } from '../../shared/api/cards.ts';
-import { language } from '../../shared/api/common.ts';
+import { type CardLanguage, language } from '../../shared/api/common.ts';
 import { UNDO_SECONDS } from '../../shared/rules/limits.ts';
 import { wifiPayload } from '../../shared/rules/wifi.ts';
 import { appendLog } from '../handovers/appendLog.ts';
@@ -15,8 +15,14 @@ import { guestForCard } from './previewCard.ts';
 /**
  * Shows a guest the code on the screen. The handover and its log line are written before anything is opened;
  * a second showing is a second line but the same handover.
+ * @param asked the language it is shown in; the guest's own, or English, unless said.
  */
-export async function showCode(context: Verb, networkId: string, guestId: string): Promise<ShownCode> {
+export async function showCode(
+  context: Verb,
+  networkId: string,
+  guestId: string,
+  asked?: CardLanguage | undefined,
+): Promise<ShownCode> {
   const { services, tx, actor, now } = context;
   const facts = await cardFacts(context, networkId);
   const { vesselId, ssid, security, hidden } = facts;
@@ -57,7 +63,7 @@ export async function showCode(context: Verb, networkId: string, guestId: string
     parts: partsForReading(passphrase),
     payload: wifiPayload({ ssid, passphrase, security, hidden }),
     language: language.catch('en').parse(guest.language),
-    validFrom: validLine(facts, which, languageOfCard(guest.language)),
+    validFrom: validLine(facts, which, asked ?? languageOfCard(guest.language)),
     which: which.which,
     underWay: facts.underWay,
     cautionDock: facts.cautionDock,

@@ -78,7 +78,7 @@ export const shownCode = z.strictObject({
   payload: z.string(),
   /** The guest's own. */
   language,
-  /** In the card's language and ship's time: "From Sun 14 June, 11:00". */
+  /** In the language asked for and ship's time: "From Sun 14 June, 11:00". */
   validFrom: z.string(),
   which: whichPassphrase,
   underWay: z.boolean(),
@@ -94,6 +94,10 @@ export const showCode = contract({
   access: whoMayHandOver,
   secret: true,
   params: networkParams.extend({ guestId: id }),
+  body: z.strictObject({
+    /** The guest's own unless said; English where no card is printed in it. */
+    language: cardLanguage.optional(),
+  }),
   response: shownCode,
 });
 

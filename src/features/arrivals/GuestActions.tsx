@@ -3,6 +3,7 @@ import { useState } from 'react';
 import type { ArrivalsView, GuestView } from '../../../shared/api/arrivals.ts';
 import { Button } from '../../components/Button.tsx';
 import { useNotices } from '../../components/Notices.tsx';
+import { SafeText } from '../../components/SafeText.tsx';
 import { sentenceFor } from '../../lib/errors.ts';
 import { GuestDialog } from './GuestDialog.tsx';
 import { guestCalled } from './guestWords.ts';
@@ -26,7 +27,7 @@ export function GuestActions({
     mutationFn: () => guestBack(vesselId, guest.id),
     onSuccess: async () => {
       await refresh();
-      say(`${guestCalled(guest)} is aboard.`);
+      say(<SafeText>{`${guestCalled(guest)} is aboard.`}</SafeText>);
     },
     onError: (error) => say(sentenceFor(error)),
   });
@@ -34,7 +35,7 @@ export function GuestActions({
     mutationFn: () => guestAshore(vesselId, guest.id),
     onSuccess: async () => {
       await refresh();
-      undoable(`${guestCalled(guest)} is ashore.`, () => back.mutate());
+      undoable(<SafeText>{`${guestCalled(guest)} is ashore.`}</SafeText>, () => back.mutate());
     },
     onError: (error) => say(sentenceFor(error)),
   });

@@ -1,5 +1,5 @@
 import { useMutation, useQueryClient } from '@tanstack/react-query';
-import { type FormEvent, useState } from 'react';
+import { type FormEvent, type ReactNode, useState } from 'react';
 import type { ArrivalsView, GuestView } from '../../../shared/api/arrivals.ts';
 import type { Language } from '../../../shared/api/common.ts';
 import { NAME_MAX } from '../../../shared/rules/limits.ts';
@@ -8,6 +8,7 @@ import { Dialog } from '../../components/Dialog.tsx';
 import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { Checkbox, Select, TextInput } from '../../components/inputs.tsx';
 import { useNotices } from '../../components/Notices.tsx';
+import { SafeText } from '../../components/SafeText.tsx';
 import { fieldError } from '../../lib/errors.ts';
 import { LANGUAGE_CHOICES } from '../../lib/languages.ts';
 import { guestCalled } from './guestWords.ts';
@@ -31,7 +32,7 @@ export function GuestDialog({ vesselId, arrivals, guest, partyId, onClose }: Gue
   const [cabinId, setCabinId] = useState(guest?.cabin?.id ?? '');
   const [language, setLanguage] = useState<Language>(guest?.language ?? 'en');
   const [under16, setUnder16] = useState(guest?.under16 ?? false);
-  const done = async (sentence: string) => {
+  const done = async (sentence: ReactNode) => {
     await client.invalidateQueries({ queryKey: arrivalsKey(vesselId) });
     say(sentence);
     onClose();
@@ -39,7 +40,8 @@ export function GuestDialog({ vesselId, arrivals, guest, partyId, onClose }: Gue
   const save = useMutation({
     mutationFn: (change: GuestChange) =>
       guest ? changeGuest(vesselId, guest.id, change) : addGuest(vesselId, partyId ?? '', change),
-    onSuccess: (saved) => done(guest ? 'Corrected.' : `${guestCalled(saved)} is on the list.`),
+    onSuccess: (saved) =>
+      done(guest ? 'Corrected.' : <SafeText>{`${guestCalled(saved)} is on the list.`}</SafeText>),
   });
   const remove = useMutation({
     mutationFn: () => removeGuest(vesselId, guest?.id ?? ''),
@@ -56,7 +58,12 @@ export function GuestDialog({ vesselId, arrivals, guest, partyId, onClose }: Gue
   };
   const error = save.error ?? remove.error ?? erase.error;
   return (
-    <Dialog open onClose={onClose} title={guest ? `Correct ${guestCalled(guest)}` : 'Add a guest'} keepOpen>
+    <Dialog
+      open
+      onClose={onClose}
+      title={guest ? <SafeText>{`Correct ${guestCalled(guest)}`}</SafeText> : 'Add a guest'}
+      keepOpen
+    >
       <form onSubmit={submit} noValidate className="flex flex-col gap-4">
         {withheld ? null : (
           <TextInput

@@ -22,7 +22,7 @@ export function GuestList({ guests, zone, selected, onSelect, label, visitors }:
   const groups = visitors ? [{ deck: '', guests: [...guests] }] : byDeck(guests);
   return (
     // biome-ignore lint/a11y/useSemanticElements: a fieldset would announce every row as a form's
-    <div ref={ref} onKeyDown={onKeyDown} role="group" aria-label={label} className="flex flex-col gap-4">
+    <div ref={ref} onKeyDown={onKeyDown} role="group" aria-label={label} className="@container flex flex-col gap-4">
       {groups.map(({ deck, guests: onDeck }) => (
         <div key={deck}>
           {deck ? (
@@ -66,11 +66,11 @@ function GuestRow({ guest, zone, visitor, sameCabin, selected, onSelect }: Guest
       aria-pressed={selected}
       onClick={onSelect}
       className={cx(
-        '-mx-2.5 grid min-h-14 w-[calc(100%+1.25rem)] grid-cols-[1fr_auto] items-center gap-x-4 px-2.5 py-2 text-left sm:grid-cols-[9.5rem_1fr_auto]',
+        '-mx-2.5 grid min-h-14 w-[calc(100%+1.25rem)] grid-cols-[1fr_auto] items-center gap-x-4 px-2.5 py-2 text-left @md:grid-cols-[9.5rem_1fr_auto]',
         selected ? 'rounded-sm bg-land' : 'hover:bg-shoal',
       )}
     >
-      <span className={cx('col-span-2 text-sm text-soft sm:col-span-1', sameCabin && 'max-sm:hidden')}>
+      <span className={cx('col-span-2 text-sm text-soft @md:col-span-1', sameCabin && '@max-md:hidden')}>
         {visitor ? (
           <>
             until <DateTime at={guest.untilAt} zone={zone} as="moment" />

@@ -10,13 +10,15 @@ import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { useNotices } from '../../components/Notices.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { Segmented } from '../../components/Segmented.tsx';
+import { printCards } from '../../lib/cardPrinting.ts';
 import { sentenceFor } from '../../lib/errors.ts';
 import { useSecret } from '../../lib/useSecret.ts';
 import { CardFace } from './CardFace.tsx';
+import { DockCaution } from './DockCaution.tsx';
 import { GuestActions } from './GuestActions.tsx';
 import { cardLanguageOf, guestCalled } from './guestWords.ts';
 import { LargeCode } from './LargeCode.tsx';
-import { arrivalsKey, handOver, previewCard, printCards, undoHandover } from './queries.ts';
+import { arrivalsKey, handOverCard, previewCard, showCode, undoHandover } from './queries.ts';
 
 interface HandOverPanelProps {
   vesselId: string;
@@ -36,9 +38,9 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
   const client = useQueryClient();
   const { say, undoable } = useNotices();
   const [language, setLanguage] = useState<CardLanguage>(cardLanguageOf(guest.language));
-  const [large, setLarge] = useState(false);
   const network = arrivals.network;
   const networkId = network?.id ?? '';
+  const called = guestCalled(guest);
   const refresh = () => client.invalidateQueries({ queryKey: arrivalsKey(vesselId) });
   const fetchCard = useCallback(
     () => previewCard(vesselId, networkId, { guestId: guest.id, language }),
@@ -48,35 +50,35 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
   const { hide: hidePeek } = peek;
   // biome-ignore lint/correctness/useExhaustiveDependencies: another language makes what is shown stale
   useEffect(() => hidePeek(), [language, hidePeek]);
-  const code = useSecret(fetchCard, LARGE_SECONDS);
 
-  const give = useMutation({
-    mutationFn: (channel: 'card' | 'screen') =>
-      handOver(vesselId, {
-        guestId: guest.id,
-        networkId,
-        channel,
-        cardId: channel === 'card' ? (guest.printedCard?.id ?? null) : null,
-      }),
-    onSuccess: async (answer, channel) => {
-      await refresh();
-      if (answer.already) say(<SafeText>{answer.sentence}</SafeText>);
-      else
-        undoable(<SafeText>{`${guestCalled(guest)}: ${answer.sentence}`}</SafeText>, () =>
-          undo.mutate(answer.handoverId),
-        );
-      if (channel === 'card') onServed(guest.id);
-    },
-  });
   const undo = useMutation({
     mutationFn: (handoverId: string) => undoHandover(vesselId, handoverId),
     onSuccess: async () => {
       await refresh();
       onSelect(guest.id);
-      say(`Taken back: ${guestCalled(guest)} has not been given the password.`);
+      say(<SafeText>{`Taken back: ${called} has not been given the password.`}</SafeText>);
     },
     onError: (error) => say(sentenceFor(error)),
   });
+  const { mutate: takeBack } = undo;
+  const give = useMutation({
+    mutationFn: () =>
+      handOverCard(vesselId, { guestId: guest.id, networkId, cardId: guest.printedCard?.id ?? null }),
+    onSuccess: async (answer) => {
+      await refresh();
+      if (answer.already) say(<SafeText>{answer.sentence}</SafeText>);
+      else
+        undoable(<SafeText>{`${called}: ${answer.sentence}`}</SafeText>, () => takeBack(answer.handoverId));
+      onServed(guest.id);
+    },
+  });
+  const fetchLarge = useCallback(async () => {
+    const shown = await showCode(vesselId, networkId, guest.id, language);
+    void client.invalidateQueries({ queryKey: arrivalsKey(vesselId) });
+    undoable(<SafeText>{`${called}: the code was shown.`}</SafeText>, () => takeBack(shown.handoverId));
+    return shown;
+  }, [client, vesselId, networkId, guest.id, called, language, undoable, takeBack]);
+  const code = useSecret(fetchLarge, LARGE_SECONDS);
   const print = useMutation({
     mutationFn: () =>
       printCards(vesselId, networkId, {
@@ -90,13 +92,7 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
       say('The card is a PDF among your downloads. Print it at actual size.');
     },
   });
-  const showLarge = async () => {
-    await give.mutateAsync('screen');
-    setLarge(true);
-    await code.show();
-  };
   const closeLarge = () => {
-    setLarge(false);
     code.hide();
     onServed(guest.id);
   };
@@ -115,7 +111,7 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
       <div>
         <p className="text-sm text-soft">Join card for</p>
         <h2 className="text-xl">
-          <SafeText>{guestCalled(guest)}</SafeText>
+          <SafeText>{called}</SafeText>
         </h2>
       </div>
       <CardFace
@@ -152,12 +148,7 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
           that one.
         </p>
       ) : null}
-      {arrivals.dockCaution ? (
-        <Caution>
-          The boat is on the dock's shared network. Ask guests to hold off banking until we switch to cellular
-          or satellite.
-        </Caution>
-      ) : null}
+      {arrivals.dockCaution ? <DockCaution vesselId={vesselId} /> : null}
       {nothing ? (
         <Caution>No password is on record for this network, so there is nothing to hand over yet.</Caution>
       ) : null}
@@ -174,12 +165,17 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
               wide
               disabled={nothing}
               busy={give.isPending && 'Writing it down…'}
-              onClick={() => give.mutate('card')}
+              onClick={() => give.mutate()}
             >
               {guest.handover ? 'Hand over another card' : 'Hand over printed card'}
             </Button>
             <div className="grid grid-cols-2 gap-2.5">
-              <Button size="large" disabled={nothing} onClick={() => void showLarge().catch(() => undefined)}>
+              <Button
+                size="large"
+                disabled={nothing}
+                busy={code.stage.kind === 'fetching' && 'Fetching…'}
+                onClick={() => void code.show()}
+              >
                 Show large code
               </Button>
               <Button
@@ -195,8 +191,14 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
         )}
         <GuestActions vesselId={vesselId} arrivals={arrivals} guest={guest} />
       </div>
-      {large && code.stage.kind === 'shown' ? (
-        <LargeCode code={code.stage.value} language={language} left={code.stage.left} onClose={closeLarge} />
+      {code.stage.kind === 'shown' ? (
+        <LargeCode
+          code={code.stage.value}
+          vesselName={arrivals.vesselName}
+          language={language}
+          left={code.stage.left}
+          onClose={closeLarge}
+        />
       ) : null}
     </div>
   );

@@ -8,7 +8,9 @@ import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { Field } from '../../components/Field.tsx';
 import { Select, TextArea } from '../../components/inputs.tsx';
 import { Section } from '../../components/Page.tsx';
+import { SafeText } from '../../components/SafeText.tsx';
 import { ApiError, fieldError, sentenceFor } from '../../lib/errors.ts';
+import { visibleText } from '../../lib/safeText.ts';
 import { base64Of, type PreviewRow, wrongLines } from './listRows.ts';
 import { newPartyDraft, type PartyDraft, PartyFields, partyOf } from './PartyDialog.tsx';
 import { PreviewTable } from './PreviewTable.tsx';
@@ -53,7 +55,7 @@ export function ImportList({ vesselId, arrivals, partyId, onAdded }: ImportListP
     add.reset();
     if (blob.size > CSV_MAX_BYTES) {
       setTooLarge(
-        `“${name}” is larger than 2 MB. Save only the sheet with the guests as CSV, and choose that.`,
+        `“${visibleText(name)}” is larger than 2 MB. Save only the sheet with the guests as CSV, and choose that.`,
       );
       return;
     }
@@ -144,7 +146,8 @@ export function ImportList({ vesselId, arrivals, partyId, onAdded }: ImportListP
           ) : null}
           <Section aside title="What was read">
             <p role="status">
-              {list.name}: {rows.length === 1 ? '1 guest' : `${rows.length} guests`} can be added
+              <SafeText>{list.name}</SafeText>: {rows.length === 1 ? '1 guest' : `${rows.length} guests`} can
+              be added
               {wrong.length > 0 ? `, ${wrong.length === 1 ? '1 line' : `${wrong.length} lines`} cannot` : ''}.
               Nothing is stored yet.
             </p>

@@ -1,4 +1,4 @@
-import type { CardPreview } from '../../../shared/api/cards.ts';
+import type { ShownCode } from '../../../shared/api/cards.ts';
 import type { CardLanguage } from '../../../shared/api/common.ts';
 import { CARD_MESSAGES } from '../../../shared/messages/card.ts';
 import { Button } from '../../components/Button.tsx';
@@ -8,22 +8,23 @@ import { QrCode } from '../../components/QrCode.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 
 interface LargeCodeProps {
-  code: CardPreview;
+  code: ShownCode;
+  vesselName: string;
   language: CardLanguage;
   /** Seconds until it hides itself. */
   left: number;
   onClose: () => void;
 }
 
-/** The code for a guest to point a phone at, in the guest's language, over the whole screen. */
-export function LargeCode({ code, language, left, onClose }: LargeCodeProps) {
+/** The code for a guest to point a phone at, in the language of the card, over the whole screen. */
+export function LargeCode({ code, vesselName, language, left, onClose }: LargeCodeProps) {
   const messages = CARD_MESSAGES[language];
   return (
     <Dialog
       open
       onClose={onClose}
       size="full"
-      title={<SafeText>{code.vesselName}</SafeText>}
+      title={<SafeText>{vesselName}</SafeText>}
       actions={
         <>
           <span className="self-center text-sm text-soft">Hides itself in {left} s</span>

@@ -9,6 +9,7 @@ import { Dialog } from '../../components/Dialog.tsx';
 import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { RadioRow } from '../../components/inputs.tsx';
 import { PageState } from '../../components/PageState.tsx';
+import { SafeText } from '../../components/SafeText.tsx';
 import { arrivalsKey, type CardOutcome, cardsOutQuery, partyAshore } from './queries.ts';
 
 interface PartyAshoreDialogProps {
@@ -41,7 +42,7 @@ export function PartyAshoreDialog({ vesselId, arrivals, party, onClose }: PartyA
       <Dialog
         open
         onClose={onClose}
-        title={`${party.name} is ashore`}
+        title={<SafeText>{`${party.name} is ashore`}</SafeText>}
         actions={
           <Button kind="primary" onClick={onClose}>
             Done
@@ -54,7 +55,7 @@ export function PartyAshoreDialog({ vesselId, arrivals, party, onClose }: PartyA
           <ul className="m-0 flex list-none flex-col gap-2 p-0">
             {gone.data.exposed.map(({ networkId, ssid, changeAt }) => (
               <li key={networkId}>
-                People who left still know the password of <strong className="font-medium">{ssid}</strong>.{' '}
+                People who left still know the password of <SafeText>{ssid}</SafeText>.{' '}
                 {changeAt ? (
                   <>
                     It changes <DateTime at={changeAt} zone={arrivals.zone} as="words" />.
@@ -79,7 +80,7 @@ export function PartyAshoreDialog({ vesselId, arrivals, party, onClose }: PartyA
     <Dialog
       open
       onClose={onClose}
-      title={`${party.name} goes ashore`}
+      title={<SafeText>{`${party.name} goes ashore`}</SafeText>}
       size="wide"
       keepOpen
       actions={
@@ -111,7 +112,7 @@ export function PartyAshoreDialog({ vesselId, arrivals, party, onClose }: PartyA
               {theirs(data.cards).map((card) => (
                 <li key={card.id} className="border-b border-rule py-2">
                   <RadioRow
-                    label={`${card.serial}, ${card.person?.name ?? ''}`}
+                    label={<SafeText>{`${card.serial}, ${card.person?.name ?? ''}`}</SafeText>}
                     name={card.id}
                     value={outcomes[card.id] ?? 'kept'}
                     options={OUTCOMES}

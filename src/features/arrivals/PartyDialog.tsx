@@ -6,6 +6,7 @@ import { Button } from '../../components/Button.tsx';
 import { Dialog } from '../../components/Dialog.tsx';
 import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { TextInput } from '../../components/inputs.tsx';
+import { SafeText } from '../../components/SafeText.tsx';
 import { serverNow } from '../../lib/clock.ts';
 import { fieldError } from '../../lib/errors.ts';
 import { fromLocal, toLocal } from '../../lib/shipLocal.ts';
@@ -117,7 +118,12 @@ export function PartyDialog({ vesselId, zone, party, onClose, onSaved }: PartyDi
     if ('party' in read && !save.isPending) save.mutate(read.party);
   };
   return (
-    <Dialog open onClose={onClose} title={party ? `Correct ${party.name}` : 'A new party'} keepOpen>
+    <Dialog
+      open
+      onClose={onClose}
+      title={party ? <SafeText>{`Correct ${party.name}`}</SafeText> : 'A new party'}
+      keepOpen
+    >
       <form onSubmit={submit} noValidate className="flex flex-col gap-4">
         <PartyFields
           draft={draft}

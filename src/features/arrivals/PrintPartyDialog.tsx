@@ -7,21 +7,8 @@ import { Dialog } from '../../components/Dialog.tsx';
 import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { Checkbox, RadioRow } from '../../components/inputs.tsx';
 import { useNotices } from '../../components/Notices.tsx';
-import { arrivalsKey, printCards } from './queries.ts';
-
-const FORMATS: readonly { value: CardFormat; label: string; hint: string }[] = [
-  {
-    value: 'wallet-sheet',
-    label: 'Wallet cards, ten to an A4 sheet',
-    hint: 'With cut marks; backs on the next page, turned on the long edge.',
-  },
-  {
-    value: 'wallet',
-    label: 'Wallet cards, one a page',
-    hint: 'The size of a bank card, for a card printer.',
-  },
-  { value: 'cabin', label: 'Cabin cards', hint: 'A6, to stand in the cabin.' },
-];
+import { CARD_FORMATS, printCards } from '../../lib/cardPrinting.ts';
+import { arrivalsKey } from './queries.ts';
 
 /** Prints cards for the whole party at once, each in its guest's language. */
 export function PrintPartyDialog({
@@ -70,7 +57,7 @@ export function PrintPartyDialog({
         </Button>
       }
     >
-      <RadioRow label="Format" name="format" value={format} options={FORMATS} onChange={setFormat} />
+      <RadioRow label="Format" name="format" value={format} options={CARD_FORMATS} onChange={setFormat} />
       <Checkbox
         label="Only for guests without a card"
         hint={`${missing.length} of ${aboard.length} have none. A card printed again makes the earlier one void.`}

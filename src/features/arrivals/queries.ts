@@ -6,10 +6,10 @@ import type {
   PartyForm,
   PartyView,
 } from '../../../shared/api/arrivals.ts';
-import type { CardPreview, CardView, PrintBody } from '../../../shared/api/cards.ts';
+import type { CardPreview, CardView, ShownCode } from '../../../shared/api/cards.ts';
 import type { CardLanguage, Language, Source } from '../../../shared/api/common.ts';
 import type { HandoverAnswer } from '../../../shared/api/handovers.ts';
-import { apiDownload, apiGet, apiSend } from '../../lib/api.ts';
+import { apiGet, apiSend } from '../../lib/api.ts';
 
 /** The arrivals screen of a vessel: the party asked for, or the one aboard or next. */
 export const arrivalsQuery = (vesselId: string, partyId: string | null = null) =>
@@ -26,12 +26,13 @@ export const arrivalsKey = (vesselId: string) => ['vessels', vesselId, 'arrivals
 export interface HandingOver {
   guestId: string;
   networkId: string;
-  channel: 'card' | 'screen';
-  cardId?: string | null;
+  /** The card in hand; null for the one printed for this person. */
+  cardId: string | null;
 }
 
-export const handOver = (vesselId: string, given: HandingOver) =>
-  apiSend<HandoverAnswer>('POST', `/vessels/${vesselId}/handovers`, given);
+/** Writes down that a printed card was handed over. */
+export const handOverCard = (vesselId: string, given: HandingOver) =>
+  apiSend<HandoverAnswer>('POST', `/vessels/${vesselId}/handovers`, { ...given, channel: 'card' });
 
 export const undoHandover = (vesselId: string, handoverId: string) =>
   apiSend('POST', `/vessels/${vesselId}/handovers/${handoverId}/undo`);
@@ -43,11 +44,10 @@ export const previewCard = (
   given: { guestId: string; language: CardLanguage },
 ) => apiSend<CardPreview>('POST', `/vessels/${vesselId}/networks/${networkId}/cards/preview`, given);
 
-/** Prints cards and saves the PDF. */
-export const printCards = (vesselId: string, networkId: string, body: PrintBody) =>
-  apiDownload('POST', `/vessels/${vesselId}/networks/${networkId}/cards/print`, {
-    body,
-    fallbackName: 'join-cards.pdf',
+/** The code to show a guest; showing it is a handover, which the server writes in the log first. */
+export const showCode = (vesselId: string, networkId: string, guestId: string, language: CardLanguage) =>
+  apiSend<ShownCode>('POST', `/vessels/${vesselId}/networks/${networkId}/guests/${guestId}/show`, {
+    language,
   });
 
 export interface NewVisitor {
@@ -122,5 +122,6 @@ export interface ListToAdd {
 export const importList = (vesselId: string, list: ListToAdd) =>
   apiSend<{ partyId: string; added: number }>('POST', `/vessels/${vesselId}/arrivals/import`, list);
 
+/** Says what feeds the boat just now; cautions and the head of every page follow. */
 export const changeSource = (vesselId: string, source: Source) =>
   apiSend('PUT', `/vessels/${vesselId}/source`, { source });

@@ -63,9 +63,11 @@ export function CardTable({
       setLosing(null);
       await refresh();
       say(
-        changeAt
-          ? `${card.serial} is lost. ${card.network} changes ${shipMomentInWords(changeAt, zone, serverNow())}.`
-          : `${card.serial} is lost. Its passphrase is not in force, so nothing has to change.`,
+        <SafeText>
+          {changeAt
+            ? `${card.serial} is lost. ${card.network} changes ${shipMomentInWords(changeAt, zone, serverNow())}.`
+            : `${card.serial} is lost. Its passphrase is not in force, so nothing has to change.`}
+        </SafeText>,
       );
     },
     onError,

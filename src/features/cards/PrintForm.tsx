@@ -10,22 +10,9 @@ import { Caution } from '../../components/Caution.tsx';
 import { Checkbox, RadioRow, Select, TextInput } from '../../components/inputs.tsx';
 import { useNotices } from '../../components/Notices.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
+import { CARD_FORMATS, printCards } from '../../lib/cardPrinting.ts';
 import { fieldError, namesFields, sentenceFor } from '../../lib/errors.ts';
-import { crewToPrintQuery, partyToPrintQuery, printCards } from './queries.ts';
-
-const FORMATS: readonly { value: CardFormat; label: string; hint: string }[] = [
-  {
-    value: 'wallet-sheet',
-    label: 'Wallet cards, ten to an A4 sheet',
-    hint: 'With cut marks; backs on the next page, turned on the long edge.',
-  },
-  {
-    value: 'wallet',
-    label: 'Wallet cards, one a page',
-    hint: 'The size of a bank card, for a card printer.',
-  },
-  { value: 'cabin', label: 'Cabin cards', hint: 'A6, to stand in the cabin.' },
-];
+import { crewToPrintQuery, partyToPrintQuery } from './queries.ts';
 
 interface PrintFormProps {
   vesselId: string;
@@ -177,7 +164,7 @@ export function PrintForm({ vesselId, roles, networks }: PrintFormProps) {
         )}
       </div>
       <div className="flex flex-col gap-5">
-        <RadioRow label="Format" name="format" value={format} options={FORMATS} onChange={setFormat} />
+        <RadioRow label="Format" name="format" value={format} options={CARD_FORMATS} onChange={setFormat} />
         <Select
           label="Language"
           value={language}

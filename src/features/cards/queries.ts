@@ -1,9 +1,9 @@
 import { infiniteQueryOptions, queryOptions } from '@tanstack/react-query';
 import type { ArrivalsView } from '../../../shared/api/arrivals.ts';
-import type { CardState, CardView, PrintBody } from '../../../shared/api/cards.ts';
+import type { CardState, CardView } from '../../../shared/api/cards.ts';
 import type { CrewView } from '../../../shared/api/crew.ts';
 import type { NetworkView } from '../../../shared/api/networks.ts';
-import { apiDownload, apiGet, apiSend } from '../../lib/api.ts';
+import { apiGet, apiSend } from '../../lib/api.ts';
 
 export interface CardPage {
   cards: CardView[];
@@ -49,13 +49,6 @@ export const crewToPrintQuery = (vesselId: string) =>
     queryKey: ['vessels', vesselId, 'crew'],
     queryFn: ({ signal }) =>
       apiGet<{ aboard: CrewView[]; signedOff: CrewView[] }>(`/vessels/${vesselId}/crew`, { signal }),
-  });
-
-/** Prints cards and saves the PDF. */
-export const printCards = (vesselId: string, networkId: string, body: PrintBody) =>
-  apiDownload('POST', `/vessels/${vesselId}/networks/${networkId}/cards/print`, {
-    body,
-    fallbackName: 'join-cards.pdf',
   });
 
 export const voidCard = (vesselId: string, cardId: string) =>

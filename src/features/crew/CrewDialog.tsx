@@ -7,6 +7,7 @@ import { Button } from '../../components/Button.tsx';
 import { Dialog } from '../../components/Dialog.tsx';
 import { ErrorLine } from '../../components/ErrorLine.tsx';
 import { Select, TextInput } from '../../components/inputs.tsx';
+import { SafeText } from '../../components/SafeText.tsx';
 import { serverNow } from '../../lib/clock.ts';
 import { fieldError } from '../../lib/errors.ts';
 import { checkForm } from '../../lib/forms.ts';
@@ -53,7 +54,12 @@ export function CrewDialog({ vesselId, zone, member, onClose }: CrewDialogProps)
     if (result.ok && !save.isPending) save.mutate(body);
   };
   return (
-    <Dialog open onClose={onClose} title={member ? `Correct ${member.name}` : 'Sign somebody on'} keepOpen>
+    <Dialog
+      open
+      onClose={onClose}
+      title={member ? <SafeText>{`Correct ${member.name}`}</SafeText> : 'Sign somebody on'}
+      keepOpen
+    >
       <form onSubmit={submit} noValidate className="grid gap-4 sm:grid-cols-2">
         <TextInput
           className="sm:col-span-2"

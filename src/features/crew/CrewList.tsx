@@ -34,7 +34,7 @@ export function CrewList({ vesselId, zone, aboard, signedOff, mayManage }: CrewL
     mutationFn: (member: CrewView) => signBackOn(vesselId, member.id),
     onSuccess: async (member) => {
       await client.invalidateQueries({ queryKey: ['vessels', vesselId] });
-      say(`${member.name} is signed on again.`);
+      say(<SafeText>{`${member.name} is signed on again.`}</SafeText>);
     },
     onError: (error) => say(sentenceFor(error)),
   });
@@ -176,7 +176,7 @@ function SignOffDialog({ vesselId, zone, member, onClose }: SignOffDialogProps) 
       <Dialog
         open
         onClose={onClose}
-        title={`${member.name} is signed off`}
+        title={<SafeText>{`${member.name} is signed off`}</SafeText>}
         actions={
           <Button kind="primary" onClick={onClose}>
             Done
@@ -206,7 +206,7 @@ function SignOffDialog({ vesselId, zone, member, onClose }: SignOffDialogProps) 
     <Dialog
       open
       onClose={onClose}
-      title={`Sign ${member.name} off`}
+      title={<SafeText>{`Sign ${member.name} off`}</SafeText>}
       actions={
         <>
           <Button onClick={onClose}>Not now</Button>
