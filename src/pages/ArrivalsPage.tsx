@@ -56,7 +56,7 @@ function Arrivals({ vesselId, arrivals }: { vesselId: string; arrivals: Arrivals
   };
   const { party } = arrivals;
   return (
-    <div className="grid grow min-[800px]:grid-cols-[1fr_22rem] min-[1100px]:grid-cols-[1fr_27.5rem]">
+    <div className="grid grow min-[800px]:grid-cols-[1fr_21rem] min-[1100px]:grid-cols-[1fr_27.5rem]">
       <div className="flex min-w-0 flex-col gap-5 px-4 py-6 sm:px-8">
         {party ? (
           <>

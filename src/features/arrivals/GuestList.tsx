@@ -22,7 +22,13 @@ export function GuestList({ guests, zone, selected, onSelect, label, visitors }:
   const groups = visitors ? [{ deck: '', guests: [...guests] }] : byDeck(guests);
   return (
     // biome-ignore lint/a11y/useSemanticElements: a fieldset would announce every row as a form's
-    <div ref={ref} onKeyDown={onKeyDown} role="group" aria-label={label} className="@container flex flex-col gap-4">
+    <div
+      ref={ref}
+      onKeyDown={onKeyDown}
+      role="group"
+      aria-label={label}
+      className="@container flex flex-col gap-4"
+    >
       {groups.map(({ deck, guests: onDeck }) => (
         <div key={deck}>
           {deck ? (
