@@ -1,5 +1,6 @@
 import { createServer } from 'node:http';
 import { Misconfigured, readConfig } from './config.ts';
+import { VaultError } from './db/vault.ts';
 import { startServer } from './start.ts';
 
 try {
@@ -14,7 +15,7 @@ try {
   process.on('SIGINT', stop);
   process.on('SIGTERM', stop);
 } catch (error) {
-  if (error instanceof Misconfigured) {
+  if (error instanceof Misconfigured || error instanceof VaultError) {
     process.stderr.write(`${error.message}\n`);
   } else {
     const reason =

@@ -79,6 +79,11 @@ export class Vault {
     return createHmac('sha256', this.fingerprintKey).update(`${vesselId}\0${passphrase}`).digest();
   }
 
+  /** Whether this process has the key of that name. */
+  holds(keyId: string): boolean {
+    return this.ring.keys.has(keyId);
+  }
+
   get currentKeyId(): string {
     return this.ring.current;
   }

@@ -1,7 +1,8 @@
 import { createPrivateKey, createPublicKey, type KeyObject, randomUUID, sign, verify } from 'node:crypto';
-import { mkdir, open } from 'node:fs/promises';
+import { type FileHandle, mkdir, open } from 'node:fs/promises';
 import { join } from 'node:path';
 import canonicalize from 'canonicalize';
+import type { LogKind } from '../../shared/rules/logKinds.ts';
 import type { Services } from '../services.ts';
 
 /** A vessel's signed log head: what its last entry was at an instant. */
@@ -18,6 +19,9 @@ export interface Checkpoint {
 
 // RFC 8410 section 7: what stands before a 32-octet Ed25519 seed in PKCS #8.
 const PKCS8_ED25519 = Buffer.from('302e020100300506032b657004220420', 'hex');
+
+/** More octets than a checkpoint's line has; one is about 280. */
+const LINE_MAX = 1024;
 
 const privateKey = (seed: Buffer): KeyObject =>
   createPrivateKey({ key: Buffer.concat([PKCS8_ED25519, seed]), format: 'der', type: 'pkcs8' });
@@ -38,11 +42,26 @@ export function isGenuine(key: KeyObject, checkpoint: Checkpoint): boolean {
   return signature.length === 64 && verify(null, signedText(checkpoint), key, signature);
 }
 
+/** What tells that somebody got a passphrase or the log itself. */
+const DISCLOSING: readonly LogKind[] = [
+  'passphrase.revealed',
+  'handover.card',
+  'handover.screen',
+  'handover.own_page',
+  'card.printed',
+  'rotation.sheet_opened',
+  'log.exported',
+];
+
 /**
- * Signs the head of every log that grew since its last checkpoint, into the database and, where a folder is
- * set, into a file outside it, which an owner of the database cannot rewrite. Answers how many were signed.
+ * Signs the head of every log that grew since its last checkpoint, or of those in which something was disclosed
+ * since then, into the database and, where a folder is set, into a file outside it, which an owner of the database
+ * cannot rewrite. Answers how many were signed; where the file cannot be written it throws and none is.
  */
-export async function checkpointLogs(services: Services): Promise<number> {
+export async function checkpointLogs(
+  services: Services,
+  which: 'grown' | 'disclosing' = 'grown',
+): Promise<number> {
   const { db, config } = services;
   const at = services.clock.now();
   return db.transaction({ kind: 'system' }, async (tx) => {
@@ -53,8 +72,12 @@ export async function checkpointLogs(services: Services): Promise<number> {
     if (!alone?.mine) return 0;
     const heads = await db.rows<{ vessel_id: string; seq: string; hash: Buffer }>(
       tx,
-      `SELECT h.vessel_id, h.seq, h.hash FROM log_heads h
-       WHERE h.seq > coalesce((SELECT max(c.seq) FROM log_checkpoints c WHERE c.vessel_id = h.vessel_id), 0) ORDER BY h.vessel_id`,
+      `SELECT h.vessel_id, h.seq, h.hash FROM log_heads h,
+         LATERAL (SELECT coalesce(max(c.seq), 0) AS seq FROM log_checkpoints c WHERE c.vessel_id = h.vessel_id) signed
+       WHERE h.seq > signed.seq AND ($kinds::text[] IS NULL OR EXISTS (
+         SELECT 1 FROM log_entries e WHERE e.vessel_id = h.vessel_id AND e.seq > signed.seq AND e.kind = ANY($kinds::text[])))
+       ORDER BY h.vessel_id`,
+      { kinds: which === 'grown' ? null : DISCLOSING },
     );
     const signed = heads.map((head) =>
       signCheckpoint(config.logSigningSeed, {
@@ -77,18 +100,34 @@ export async function checkpointLogs(services: Services): Promise<number> {
   });
 }
 
-/** One line a checkpoint, appended and on the disk before this returns. */
+/** One line a checkpoint, appended and on the disk before this returns; a line is there whole or not at all. */
 async function keepOutside(folder: string, signed: readonly Checkpoint[]): Promise<void> {
   await mkdir(folder, { recursive: true });
   for (const one of signed) {
-    const file = await open(join(folder, checkpointFile(one.vesselId)), 'a', 0o600);
+    const file = await open(join(folder, checkpointFile(one.vesselId)), 'a+', 0o600);
     try {
-      await file.write(`${JSON.stringify(one)}\n`);
-      await file.sync();
+      const whole = await endOfLastLine(file);
+      try {
+        await file.appendFile(`${JSON.stringify(one)}\n`);
+        await file.sync();
+      } catch (error) {
+        await file.truncate(whole).catch(() => undefined);
+        throw error;
+      }
     } finally {
       await file.close();
     }
   }
+}
+
+/** Where the last whole line ends. What a power cut left behind it was never taken for written, and is cut off. */
+async function endOfLastLine(file: FileHandle): Promise<number> {
+  const { size } = await file.stat();
+  const from = Math.max(0, size - LINE_MAX);
+  const { buffer, bytesRead } = await file.read(Buffer.alloc(size - from), 0, size - from, from);
+  const whole = from + buffer.subarray(0, bytesRead).lastIndexOf(0x0a) + 1;
+  if (whole < size) await file.truncate(whole);
+  return whole;
 }
 
 /** Name of a vessel's file in the checkpoint folder. */

@@ -1,7 +1,7 @@
 import type { Migration } from '../db/migration.ts';
 
 /** Tables of one vessel that the vessel's own scope sees. */
-const OF_VESSEL = [
+export const OF_VESSEL = [
   'ship_zones',
   'cabins',
   'networks',
@@ -29,7 +29,15 @@ const OF_VESSEL = [
 ];
 
 /** Of those, what a dealer's scope may read: no secret, no guest, no name. */
-const FOR_DEALER = ['ship_zones', 'networks', 'policies', 'passphrases', 'rotations', 'holders', 'leaks'];
+export const FOR_DEALER = [
+  'ship_zones',
+  'networks',
+  'policies',
+  'passphrases',
+  'rotations',
+  'holders',
+  'leaks',
+];
 
 const tenant = OF_VESSEL.map(
   (table) => `

@@ -39,6 +39,8 @@ export interface TestApp {
   readonly origin: string;
   /** Every answer the server gave to a test's clients. */
   readonly recorded: Recorded[];
+  /** Ids of every session a client of this file used; nothing but a cookie may hold one. */
+  readonly sessionIds: Set<string>;
 }
 
 export const testEnv = (appUrl: string): NodeJS.ProcessEnv => ({
@@ -84,6 +86,7 @@ export function useApp(): TestApp {
       logged: () => lines,
       origin: config.publicUrl,
       recorded: [],
+      sessionIds: new Set(),
     };
   });
   afterEach(async () => {

@@ -170,4 +170,5 @@ const pick = (test: TestApp): TestApp => ({
   logged: test.logged,
   origin: test.origin,
   recorded: test.recorded,
+  sessionIds: test.sessionIds,
 });
