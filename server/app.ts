@@ -73,10 +73,7 @@ function register(router: express.Router, services: Services, { contract, serve 
 /** The built client: hashed assets for a year, the page itself never kept. */
 function client(app: Express, dir: string): void {
   if (!existsSync(dir)) return;
-  app.use(
-    '/assets',
-    express.static(`${dir}/assets`, { immutable: true, maxAge: '365d', fallthrough: false, etag: false }),
-  );
+  app.use('/assets', express.static(`${dir}/assets`, { immutable: true, maxAge: '365d', etag: false }));
   app.use(express.static(dir, { index: false, etag: false, cacheControl: false, setHeaders: noStore }));
   app.get(/^\/(?!api\/|assets\/).*/, (request, response, next) => {
     if (/\.[a-z0-9]{1,8}$/i.test(request.path)) return next();

@@ -28,7 +28,8 @@ function check(schema: z.ZodType, value: unknown): unknown {
     throw invalid({ [unkept]: ['Leave out the zero character and broken letters; they cannot be kept'] });
   const parsed = schema.safeParse(value);
   if (parsed.success) return parsed.data;
-  const errors: Record<string, string[]> = {};
+  // A map, because a field may be called as something that every object has.
+  const errors = new Map<string, string[]>();
   for (const issue of parsed.error.issues) {
     const keys =
       issue.code === 'unrecognized_keys' ? issue.keys.map((name) => [...issue.path, name]) : [issue.path];
@@ -36,11 +37,11 @@ function check(schema: z.ZodType, value: unknown): unknown {
       const key = path.map(String).join('.') || 'body';
       const sentence =
         issue.code === 'unrecognized_keys' ? 'This field is not known here; leave it out' : issue.message;
-      errors[key] = [...(errors[key] ?? []), sentence];
+      errors.set(key, [...(errors.get(key) ?? []), sentence]);
     }
   }
   throw new AppError('invalid', 'Some of this needs correcting. Each field says what would be right.', {
-    errors,
+    errors: Object.fromEntries(errors),
   });
 }
 
