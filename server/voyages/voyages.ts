@@ -1,8 +1,9 @@
 import { randomUUID } from 'node:crypto';
 import type { VoyageKind } from '../../shared/api/common.ts';
-import type { VoyageList, VoyageView } from '../../shared/api/voyages.ts';
+import type { VoyageForm, VoyageList, VoyageView } from '../../shared/api/voyages.ts';
 import { may } from '../../shared/rules/permissions.ts';
 import { zoneAt } from '../../shared/rules/shipTime.ts';
+import { VOYAGE_KIND_NAMES } from '../../shared/rules/voyageKinds.ts';
 import { notFound } from '../errors.ts';
 import { lockLog } from '../handovers/lockLog.ts';
 import type { Verb } from '../http/verb.ts';
@@ -10,13 +11,6 @@ import { replanVessel } from '../vessels/changeVessel.ts';
 import { shipZones } from '../vessels/readVessel.ts';
 import { logThat, requireOrder, vesselOf } from './verb.ts';
 
-/** What stands for a title before people who may not see guests: titles carry names. */
-const NEUTRAL: Record<VoyageKind, string> = {
-  charter: 'Charter',
-  owner_trip: "Owner's trip",
-  crossing: 'Crossing',
-  yard: 'Yard period',
-};
 const YEAR_MS = 365 * 86_400_000;
 
 interface Row {
@@ -53,17 +47,8 @@ export async function listVoyages(
   };
 }
 
-export interface VoyageFields {
-  readonly kind: VoyageKind;
-  readonly title: string;
-  readonly startsAt: string;
-  readonly endsAt: string;
-  readonly fromPort: string | null;
-  readonly toPort: string | null;
-}
-
 /** Adds a stretch to the calendar; every network's plan looks again. */
-export async function createVoyage(context: Verb, given: VoyageFields): Promise<VoyageView> {
+export async function createVoyage(context: Verb, given: VoyageForm): Promise<VoyageView> {
   requireOrder(new Date(given.startsAt), new Date(given.endsAt), 'endsAt');
   await lockLog(context.services, context.tx, vesselOf(context));
   return store(context, randomUUID(), given, 'added');
@@ -73,7 +58,7 @@ export async function createVoyage(context: Verb, given: VoyageFields): Promise<
 export async function editVoyage(
   context: Verb,
   voyageId: string,
-  given: Partial<VoyageFields>,
+  given: Partial<VoyageForm>,
 ): Promise<VoyageView> {
   const { services, tx } = context;
   await lockLog(services, tx, vesselOf(context));
@@ -83,7 +68,7 @@ export async function editVoyage(
     { id: voyageId, vessel: vesselOf(context) },
   );
   if (!old) throw notFound();
-  const next: VoyageFields = {
+  const next: VoyageForm = {
     kind: given.kind ?? old.kind,
     title: given.title ?? old.title,
     startsAt: given.startsAt ?? old.starts_at.toISOString(),
@@ -115,7 +100,7 @@ export async function deleteVoyage(context: Verb, voyageId: string): Promise<{ i
 async function store(
   context: Verb,
   id: string,
-  given: VoyageFields,
+  given: VoyageForm,
   what: 'added' | 'changed',
 ): Promise<VoyageView> {
   const { services, tx, now } = context;
@@ -156,7 +141,7 @@ async function store(
 const present = ({ actor }: Verb, row: Row): VoyageView => ({
   id: row.id,
   kind: row.kind,
-  title: may(actor.roles, 'arrivals.view') ? row.title : NEUTRAL[row.kind],
+  title: may(actor.roles, 'arrivals.view') ? row.title : VOYAGE_KIND_NAMES[row.kind],
   startsAt: row.starts_at.toISOString(),
   endsAt: row.ends_at.toISOString(),
   fromPort: row.from_port,

@@ -6,7 +6,7 @@ import { isPlainLine } from '../rules/plainLine.ts';
 import { WIFI_SECURITIES } from '../rules/wifi.ts';
 
 export const id = z.uuid('This is not an identifier we made');
-const likeThis = 'Give an instant such as 2026-06-14T09:00:00Z';
+const likeThis = 'Give a date and a time, such as 2026-06-14T09:00:00Z';
 /** An instant in UTC, ISO 8601 with `Z`, of a year that a vessel's calendar can mean: 1900 to 2199 (common practice, no source). */
 export const instant = z.iso
   .datetime({ error: likeThis })

@@ -33,7 +33,7 @@ export const voyageForm = z.strictObject({
   fromPort: port.default(null),
   toPort: port.default(null),
 });
-export type VoyageForm = z.input<typeof voyageForm>;
+export type VoyageForm = z.output<typeof voyageForm>;
 
 export const voyageChange = z.strictObject({
   kind: voyageKind.optional(),

@@ -17,6 +17,11 @@ export function checkForm<S extends z.ZodType>(schema: S, values: unknown): Resu
     sentences.push(issue.message);
     errors[path] = sentences;
   }
+  return { ok: false, error: refusedForm(errors) };
+}
+
+/** What is wrong with a form, by field path, in the shape the server would answer. */
+export function refusedForm(errors: Record<string, string[]>): ApiError {
   const detail = 'Some fields need another look. Nothing was changed.';
-  return { ok: false, error: new ApiError({ code: 'invalid', detail, errors }, 422) };
+  return new ApiError({ code: 'invalid', detail, errors }, 422);
 }

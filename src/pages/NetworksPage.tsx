@@ -19,6 +19,7 @@ import { PlanDialog } from '../features/rotations/PlanDialog.tsx';
 import { rotationsQuery, voyagesQuery } from '../features/rotations/queries.ts';
 import { SixWeeks } from '../features/rotations/SixWeeks.tsx';
 import { vesselQuery } from '../features/vessels/queries.ts';
+import { CalendarDialog } from '../features/voyages/CalendarDialog.tsx';
 import { useNow } from '../lib/clock.ts';
 import { startLoad } from '../lib/queryClient.ts';
 import { useTitle } from '../lib/useTitle.ts';
@@ -35,7 +36,7 @@ export function networksLoader({ params }: LoaderFunctionArgs) {
   return null;
 }
 
-type Asked = { what: 'change' | 'plan'; networkId: string } | { what: 'add' } | null;
+type Asked = { what: 'change' | 'plan'; networkId: string } | { what: 'add' | 'calendar' } | null;
 
 /** `/vessels/:vesselId/networks` */
 export function NetworksPage() {
@@ -62,7 +63,7 @@ export function NetworksPage() {
         {({ networks, crossingUntil }) => {
           const worst = worstOf(networks, now);
           const chosen =
-            asked && asked.what !== 'add' ? networks.find(({ id }) => id === asked.networkId) : undefined;
+            asked && 'networkId' in asked ? networks.find(({ id }) => id === asked.networkId) : undefined;
           if (networks.length === 0) {
             return (
               <>
@@ -101,7 +102,14 @@ export function NetworksPage() {
                   />
                 ))}
               </ul>
-              <Section title="Next six weeks">
+              <Section
+                title="Next six weeks"
+                action={
+                  may(roles, 'voyages.edit') && voyages.data ? (
+                    <Button onClick={() => setAsked({ what: 'calendar' })}>Edit the calendar</Button>
+                  ) : null
+                }
+              >
                 <PageState
                   query={rotations}
                   loading="Fetching the plan…"
@@ -141,6 +149,9 @@ export function NetworksPage() {
           );
         }}
       </PageState>
+      {asked?.what === 'calendar' ? (
+        <CalendarDialog {...{ vesselId, zone }} voyages={calendar} onClose={close} />
+      ) : null}
       {asked?.what === 'add' ? (
         <Suspense fallback={<Loading>Opening the form…</Loading>}>
           <NetworkForm
