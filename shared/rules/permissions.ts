@@ -14,6 +14,12 @@ export type DealerRole = (typeof DEALER_ROLES)[number];
 export const AUDIENCES = ['owner', 'guest', 'crew'] as const;
 export type Audience = (typeof AUDIENCES)[number];
 
+export const AUDIENCE_NAMES: Readonly<Record<Audience, string>> = {
+  owner: 'Owner',
+  guest: 'Guest',
+  crew: 'Crew',
+};
+
 export const ROLE_NAMES: Record<VesselRole | DealerRole, string> = {
   captain: 'Captain',
   chief_stew: 'Chief stew',

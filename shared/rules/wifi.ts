@@ -5,6 +5,13 @@ export const WIFI_SECURITIES = ['wpa2', 'transition', 'wpa3'] as const;
 /** `transition` accepts WPA2 and WPA3 phones at once; `wpa3` is SAE only. */
 export type WifiSecurity = (typeof WIFI_SECURITIES)[number];
 
+/** How screens call it. */
+export const SECURITY_NAMES: Readonly<Record<WifiSecurity, string>> = {
+  wpa2: 'WPA2',
+  transition: 'WPA2 and WPA3 (transition)',
+  wpa3: 'WPA3 only',
+};
+
 /** What a join card's QR code says. */
 export interface WifiAccess {
   ssid: string;

@@ -10,7 +10,7 @@ import { FirstLoad } from './FirstLoad.tsx';
 import { Frame } from './Frame.tsx';
 import { vesselPlaces } from './places.ts';
 import { NotFound } from './RouteError.tsx';
-import { rolesInWords } from './roleLine.ts';
+import { shownRoles } from './roleLine.ts';
 import { useSession } from './session.ts';
 import { VesselSwitcher } from './VesselSwitcher.tsx';
 
@@ -44,7 +44,7 @@ export function VesselShell() {
         </>
       }
       places={vesselPlaces(vesselId, membership.roles)}
-      menu={<AccountMenu session={session} role={rolesInWords(membership.roles)} vesselId={vesselId} />}
+      menu={<AccountMenu session={session} role={shownRoles(membership.roles)} vesselId={vesselId} />}
     />
   );
 }

@@ -1,11 +1,8 @@
 import type { ReactNode } from 'react';
+import { AUDIENCE_NAMES, type Audience } from '../../shared/rules/permissions.ts';
 import { cx } from '../lib/cx.ts';
 
-export type FlagAudience = 'owner' | 'guest' | 'crew';
-
-const WORDS: Record<FlagAudience, string> = { owner: 'Owner', guest: 'Guest', crew: 'Crew' };
-
-const SHAPES: Record<FlagAudience, ReactNode> = {
+const SHAPES: Record<Audience, ReactNode> = {
   owner: <path d="M4 3h36v22H4z" className="fill-flag-blue" />,
   guest: (
     <>
@@ -17,7 +14,7 @@ const SHAPES: Record<FlagAudience, ReactNode> = {
 };
 
 interface FlagProps {
-  audience: FlagAudience;
+  audience: Audience;
   size?: 'small' | 'large';
   /** Leave the word out only where the audience already stands beside the flag in words. */
   word?: boolean;
@@ -35,7 +32,7 @@ export function Flag({ audience, size = 'small', word = true }: FlagProps) {
         <path d="M0 0h2.6v28H0z" className="fill-ink" />
         {SHAPES[audience]}
       </svg>
-      {word ? <span className="text-soft">{WORDS[audience]}</span> : null}
+      {word ? <span className="text-soft">{AUDIENCE_NAMES[audience]}</span> : null}
     </span>
   );
 }

@@ -4,6 +4,7 @@ import { FLEET_SORTS, type FleetSort, STANDINGS, type Standing } from '../../sha
 import { Button } from '../components/Button.tsx';
 import { Select } from '../components/inputs.tsx';
 import { Page } from '../components/Page.tsx';
+import { Pager } from '../components/Pager.tsx';
 import { Empty, PageState } from '../components/PageState.tsx';
 import { Search } from '../components/Search.tsx';
 import { Sentence } from '../components/Sentence.tsx';
@@ -106,7 +107,8 @@ export function FleetPage() {
                 ) : (
                   <FleetTable rows={fleet.vessels} sort={wish.sort} onSort={(sort) => change({ sort })} />
                 )}
-                <Pages
+                <Pager
+                  label="Pages of the table"
                   page={fleet.page}
                   pages={Math.ceil(fleet.matching / fleet.limit)}
                   onPage={(page) => change({ page })}
@@ -117,22 +119,5 @@ export function FleetPage() {
         )}
       </PageState>
     </Page>
-  );
-}
-
-function Pages({ page, pages, onPage }: { page: number; pages: number; onPage: (page: number) => void }) {
-  if (pages <= 1) return null;
-  return (
-    <nav aria-label="Pages of the table" className="flex items-center gap-4 text-sm text-soft">
-      <Button disabled={page <= 1} onClick={() => onPage(page - 1)}>
-        Before
-      </Button>
-      <span>
-        {page} of {pages}
-      </span>
-      <Button disabled={page >= pages} onClick={() => onPage(page + 1)}>
-        Next
-      </Button>
-    </nav>
   );
 }

@@ -1,6 +1,7 @@
 import { useQuery } from '@tanstack/react-query';
 import { Link, type LoaderFunctionArgs, useParams } from 'react-router-dom';
 import type { FleetVesselView } from '../../shared/api/fleet.ts';
+import { SECURITY_NAMES } from '../../shared/rules/wifi.ts';
 import { AgeScale } from '../components/AgeScale.tsx';
 import { DateTime } from '../components/DateTime.tsx';
 import { Flag } from '../components/Flag.tsx';
@@ -36,7 +37,6 @@ export function FleetVesselPage() {
   );
 }
 
-const SECURITY_WORDS = { wpa2: 'WPA2', wpa3: 'WPA3', transition: 'WPA2 and WPA3' } as const;
 const STANDING_SENTENCE: Record<FleetVesselView['standing'], string> = {
   in_order: 'Every network is in order.',
   due: 'A change is due soon.',
@@ -91,7 +91,7 @@ function VesselAudit({ vessel }: { vessel: FleetVesselView }) {
                     <SafeText>{network.ssid}</SafeText>
                   </p>
                   <p className="text-sm text-soft">
-                    {network.audience}, {SECURITY_WORDS[network.security]}
+                    {network.audience}, {SECURITY_NAMES[network.security]}
                     {network.carriesEquipment ? ", carries ship's equipment" : ''}
                   </p>
                 </div>
@@ -107,10 +107,13 @@ function VesselAudit({ vessel }: { vessel: FleetVesselView }) {
                 </p>
                 <p>{network.guess ?? 'Strength not known'}</p>
                 <p>
-                  {network.holders} hold it
+                  {network.holders === 1 ? '1 person holds' : `${network.holders} people hold`} it
                   {network.departedHolders > 0 ? (
                     <>
-                      , <Attention>{network.departedHolders} have left</Attention>
+                      ,{' '}
+                      <Attention>
+                        {network.departedHolders} {network.departedHolders === 1 ? 'has' : 'have'} left
+                      </Attention>
                     </>
                   ) : null}
                   {network.openLeaks > 0 ? (
@@ -129,7 +132,7 @@ function VesselAudit({ vessel }: { vessel: FleetVesselView }) {
           <Empty title="No change is on record yet." />
         ) : (
           <Table
-            caption={`Changes on ${vessel.name}, newest first`}
+            caption={<SafeText>{`Changes on ${vessel.name}, newest first`}</SafeText>}
             head={
               <>
                 <Th>Network</Th>

@@ -3,6 +3,7 @@ import { useState } from 'react';
 import { type LoaderFunctionArgs, useSearchParams } from 'react-router-dom';
 import { Button } from '../components/Button.tsx';
 import { Page } from '../components/Page.tsx';
+import { Pager } from '../components/Pager.tsx';
 import { Empty, PageState } from '../components/PageState.tsx';
 import { SafeText } from '../components/SafeText.tsx';
 import { Search } from '../components/Search.tsx';
@@ -84,7 +85,8 @@ export function FleetVesselsPage() {
                 ) : (
                   <VesselTable rows={fleet.vessels} />
                 )}
-                <Pages
+                <Pager
+                  label="Pages of the list"
                   page={fleet.page}
                   pages={Math.ceil(fleet.matching / fleet.limit)}
                   onPage={(page) => go({ page: page > 1 ? String(page) : '' })}
@@ -109,20 +111,3 @@ export function FleetVesselsPage() {
 
 const count = (vessels: number) =>
   vessels === 0 ? 'No vessel is' : vessels === 1 ? '1 vessel is' : `${vessels} vessels are`;
-
-function Pages({ page, pages, onPage }: { page: number; pages: number; onPage: (page: number) => void }) {
-  if (pages <= 1) return null;
-  return (
-    <nav aria-label="Pages of the list" className="flex items-center gap-4 text-sm text-soft">
-      <Button disabled={page <= 1} onClick={() => onPage(page - 1)}>
-        Before
-      </Button>
-      <span>
-        {page} of {pages}
-      </span>
-      <Button disabled={page >= pages} onClick={() => onPage(page + 1)}>
-        Next
-      </Button>
-    </nav>
-  );
-}

@@ -1,7 +1,9 @@
 import { create } from 'qrcode';
+import { createElement } from 'react';
+import { renderToStaticMarkup } from 'react-dom/server';
 import { describe, expect, test } from 'vitest';
 import { ageLabel, ageScaleTicks } from '../../src/components/ageScaleTicks.ts';
-import { passphraseParts } from '../../src/components/passphraseWords.ts';
+import { PassphraseWords } from '../../src/components/Passphrase.tsx';
 import { QUIET_ZONE, qrPath } from '../../src/components/qrPath.ts';
 
 describe('an age scale', () => {
@@ -39,25 +41,22 @@ describe('an age scale', () => {
 });
 
 describe('a passphrase on a screen', () => {
-  test('keeps every character, words apart from separators', () => {
-    expect(passphraseParts('maple-sextant-drum').map((part) => part.kind)).toEqual([
-      'word',
-      'separator',
-      'word',
-      'separator',
-      'word',
-    ]);
-    for (const typed of ['maple-sextant', 'a--b', '-x-', 'one_two.three', 'nowords', '!"#$%&\'()']) {
-      expect(
-        passphraseParts(typed)
-          .map((part) => part.text)
-          .join(''),
-      ).toBe(typed);
-    }
+  const drawn = (passphrase: string) =>
+    renderToStaticMarkup(createElement(PassphraseWords, null, passphrase));
+  const texts = (markup: string) =>
+    [...markup.matchAll(/>([^<]+)</g)].map(([, text = '']) =>
+      text.replaceAll('&quot;', '"').replaceAll('&#x27;', "'").replaceAll('&amp;', '&'),
+    );
+
+  test('keeps every character, words apart from separators, breaking only after a separator', () => {
+    expect(texts(drawn('maple-sextant-drum'))).toEqual(['maple', '-', 'sextant', '-', 'drum']);
+    expect(drawn('maple-sextant-drum').match(/<wbr\/>/g)).toHaveLength(2);
+    for (const typed of ['a--b', '-x-', 'one_two.three', 'nowords', '!"#$%&\'()'])
+      expect(texts(drawn(typed)).join('')).toBe(typed);
   });
 
   test('shows spaces, which count', () => {
-    expect(passphraseParts('two words ').map((part) => part.text)).toEqual(['two', '␣', 'words', '␣']);
+    expect(texts(drawn('two words '))).toEqual(['two', '␣', 'words', '␣']);
   });
 });
 

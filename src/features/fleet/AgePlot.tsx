@@ -2,10 +2,12 @@ import { useEffect, useRef, useState } from 'react';
 import { Link } from 'react-router-dom';
 import type { FleetDot } from '../../../shared/api/fleet.ts';
 import { AUDIENCES } from '../../../shared/rules/permissions.ts';
+import { ageLabel } from '../../components/ageScaleTicks.ts';
 import { Flag } from '../../components/Flag.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { Scale } from '../../components/Scale.tsx';
 import { cx } from '../../lib/cx.ts';
+import { visibleText } from '../../lib/safeText.ts';
 import { plotAxis, plotX, swarm } from './plotLayout.ts';
 
 const ROW = 66;
@@ -32,8 +34,14 @@ const FRACTIONS = [
 ];
 
 function dotWords(dot: FleetDot): string {
-  const held = dot.exposedCount > 0 ? `, ${dot.exposedCount} departed still hold it` : '';
-  return `${dot.vesselName}, ${dot.audience}: ${Math.floor(dot.ageDays)} days, limit ${dot.limitDays}${held}`;
+  const { exposedCount, audience, ageDays, limitDays } = dot;
+  const held =
+    exposedCount === 0
+      ? ''
+      : exposedCount === 1
+        ? ', 1 person who has left still holds it'
+        : `, ${exposedCount} people who have left still hold it`;
+  return `${visibleText(dot.vesselName)}, ${audience}: ${ageLabel(ageDays)} old, limit ${limitDays} days${held}`;
 }
 
 /**
@@ -130,7 +138,7 @@ export function AgePlot({ dots }: { dots: readonly FleetDot[] }) {
                         top: ROW / 2 + worst.y - 25,
                       }}
                     >
-                      <SafeText>{worst.item.vesselName}</SafeText>, {Math.floor(worst.item.ageDays)} days
+                      <SafeText>{worst.item.vesselName}</SafeText>, {ageLabel(worst.item.ageDays)}
                     </span>
                   ) : null}
                 </div>

@@ -1,11 +1,10 @@
 import { Link } from 'react-router-dom';
 import type { FleetAge, FleetNextChange, FleetRow } from '../../../shared/api/fleet.ts';
 import type { FleetSort } from '../../../shared/rules/fleet.ts';
+import { AUDIENCE_NAMES } from '../../../shared/rules/permissions.ts';
 import { DateTime } from '../../components/DateTime.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { RowName, Table, Td, Th } from '../../components/Table.tsx';
-
-const AUDIENCE_WORDS = { owner: 'Owner', guest: 'Guest', crew: 'Crew' } as const;
 
 interface FleetTableProps {
   rows: readonly FleetRow[];
@@ -80,7 +79,7 @@ const people = (count: number) => (count === 0 ? 'None' : count === 1 ? '1 perso
 
 /** When a vessel's or network's next change is, in ship's time, or why there is none. */
 export function NextChange({ next, zone }: { next: FleetNextChange; zone: string }) {
-  const who = next.audience ? `${AUDIENCE_WORDS[next.audience]}, ` : '';
+  const who = next.audience ? `${AUDIENCE_NAMES[next.audience]}, ` : '';
   if (next.kind === 'due' && next.dueAt) {
     return (
       <>
