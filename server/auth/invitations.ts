@@ -5,9 +5,9 @@ import { type DealerRole, ROLE_NAMES, type VesselRole } from '../../shared/rules
 import { setScope, type Tx } from '../db/connection.ts';
 import { AppError, invalid } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
+import { lockLog } from '../handovers/lockLog.ts';
 import { newToken, sha256 } from '../http/session.ts';
 import { queueMail } from '../mail/queueMail.ts';
-import { lockLog } from '../rotations/lockRotation.ts';
 import type { Services } from '../services.ts';
 import { refuseEasyPassword } from './easyPasswords.ts';
 import { endExpired } from './members.ts';

@@ -4,8 +4,8 @@ import { ROLE_NAMES, type VesselRole } from '../../shared/rules/permissions.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, notFound } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
+import { lockLog } from '../handovers/lockLog.ts';
 import { queueMail } from '../mail/queueMail.ts';
-import { lockLog } from '../rotations/lockRotation.ts';
 import type { Services } from '../services.ts';
 
 /** Who has which role on the vessel now, by name. */

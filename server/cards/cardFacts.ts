@@ -4,10 +4,10 @@ import type { Audience } from '../../shared/rules/permissions.ts';
 import { isUnderWay } from '../../shared/rules/rotation.ts';
 import { type ZoneSpan, zoneAt } from '../../shared/rules/shipTime.ts';
 import type { WifiSecurity } from '../../shared/rules/wifi.ts';
+import { requireFresh } from '../auth/requireFresh.ts';
 import { AppError, notFound } from '../errors.ts';
 import { passphraseFor } from '../handovers/passphraseFor.ts';
 import type { Verb } from '../http/verb.ts';
-import { requireFresh } from '../rotations/changeNow.ts';
 import { shipZones } from '../vessels/readVessel.ts';
 
 /** What every card of one network has in common, before any passphrase is opened. */

@@ -9,7 +9,7 @@ import type { FileReply } from '../http/reply.ts';
 import type { Verb } from '../http/verb.ts';
 import { holderOf } from '../passphrases/reveal.ts';
 import { openPassphrase } from '../passphrases/sealPassphrase.ts';
-import { byActor } from '../rotations/changeNow.ts';
+import { byActor } from '../rotations/by.ts';
 import { type CardFacts, type Carried, carried, languageOfCard, validLine } from './cardFacts.ts';
 import { drawCards } from './drawCards.ts';
 import { takeSerials } from './serials.ts';

@@ -1,5 +1,6 @@
 import type { CardPreview } from '../../shared/api/cards.ts';
 import type { CardLanguage } from '../../shared/messages/card.ts';
+import { partsForReading } from '../../shared/rules/passphrase.ts';
 import { wifiPayload } from '../../shared/rules/wifi.ts';
 import { notFound } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
@@ -9,7 +10,6 @@ import { ABSOLUTE_MS } from '../http/session.ts';
 import type { Verb } from '../http/verb.ts';
 import { holderOf } from '../passphrases/reveal.ts';
 import { openPassphrase } from '../passphrases/sealPassphrase.ts';
-import { partsForReading } from '../rotations/openSheet.ts';
 import { type CardFacts, cardFacts, carried, languageOfCard, validLine } from './cardFacts.ts';
 import { readyCard } from './serials.ts';
 

@@ -5,7 +5,7 @@ import { appendLog } from '../handovers/appendLog.ts';
 import { lockLog } from '../handovers/lockLog.ts';
 import { settleCards } from '../handovers/settleCards.ts';
 import type { Verb } from '../http/verb.ts';
-import { byActor } from '../rotations/changeNow.ts';
+import { byActor } from '../rotations/by.ts';
 import { replanNetwork } from '../rotations/replan.ts';
 
 export interface StoredCard {

@@ -1,14 +1,14 @@
 import type { ShownCode } from '../../shared/api/cards.ts';
 import { type CardLanguage, language } from '../../shared/api/common.ts';
 import { UNDO_SECONDS } from '../../shared/rules/limits.ts';
+import { partsForReading } from '../../shared/rules/passphrase.ts';
 import { wifiPayload } from '../../shared/rules/wifi.ts';
 import { appendLog } from '../handovers/appendLog.ts';
 import { lockLog } from '../handovers/lockLog.ts';
 import { recordHandoverOnce } from '../handovers/recordHandover.ts';
 import type { Verb } from '../http/verb.ts';
 import { openPassphrase } from '../passphrases/sealPassphrase.ts';
-import { byActor } from '../rotations/changeNow.ts';
-import { partsForReading } from '../rotations/openSheet.ts';
+import { byActor } from '../rotations/by.ts';
 import { cardFacts, carried, languageOfCard, validLine } from './cardFacts.ts';
 import { guestForCard } from './previewCard.ts';
 

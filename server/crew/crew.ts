@@ -8,7 +8,7 @@ import type { Tx } from '../db/connection.ts';
 import { AppError, invalid, notFound } from '../errors.ts';
 import { appendLog, type LogEvent } from '../handovers/appendLog.ts';
 import { markBack, markDeparted } from '../handovers/holders.ts';
-import { lockLog } from '../rotations/lockRotation.ts';
+import { lockLog } from '../handovers/lockLog.ts';
 import { replanNetwork } from '../rotations/replan.ts';
 import type { Services } from '../services.ts';
 

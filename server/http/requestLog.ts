@@ -15,7 +15,7 @@ export const told = (response: Response): Told => response.locals;
 
 /**
  * One line a request: who did what, where, how it ended and how many milliseconds it took. Of the address only the
- * route's name and the vessel are kept, never what somebody typed there; no query, body or token (guard R26).
+ * route's name and the vessel are kept, never what somebody typed there; no query, body or token (R26).
  */
 export function requestLog(services: Services): RequestHandler {
   return (request, response, next) => {

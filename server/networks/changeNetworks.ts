@@ -5,8 +5,9 @@ import type { Audience } from '../../shared/rules/permissions.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, invalid, notFound } from '../errors.ts';
 import { appendLog, type LogEvent } from '../handovers/appendLog.ts';
+import { lockLog } from '../handovers/lockLog.ts';
 import { voidCards } from '../rotations/comeIntoForce.ts';
-import { lockLog, lockNetwork } from '../rotations/lockRotation.ts';
+import { lockNetwork } from '../rotations/lockRotation.ts';
 import { replanNetwork } from '../rotations/replan.ts';
 import type { Services } from '../services.ts';
 

@@ -55,7 +55,7 @@ export async function networkFacts(
 }
 
 /**
- * Which passphrases may work now and in which order to try them (guard section 3.3): the one in force alone while
+ * Which passphrases may work now and in which order to try them: the one in force alone while
  * nothing is under way; both once a change has left for the boat, the new one first after its time; a staged one
  * last, only for those who prepare its cards; and the one before where an access point was seen to have moved away
  * from the one in force. Never rounded to one while it is not known.

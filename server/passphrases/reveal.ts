@@ -1,12 +1,12 @@
 import type { Revealed } from '../../shared/api/passphrases.ts';
 import { may, printAction } from '../../shared/rules/permissions.ts';
+import { requireFresh } from '../auth/requireFresh.ts';
 import type { Tx } from '../db/connection.ts';
 import { appendLog } from '../handovers/appendLog.ts';
+import { lockLog } from '../handovers/lockLog.ts';
 import { type HandoverChannel, type Holder, recordHandover } from '../handovers/recordHandover.ts';
 import type { Actor } from '../http/session.ts';
-import { requireFresh } from '../rotations/changeNow.ts';
 import { confirmWay } from '../rotations/confirmWay.ts';
-import { lockLog } from '../rotations/lockRotation.ts';
 import type { Services } from '../services.ts';
 import { type NetworkFacts, networkFacts, openCodes, passphrasesToTry, type ToShow } from './codesToTry.ts';
 
@@ -50,7 +50,7 @@ export async function reveal(asked: Asked): Promise<Revealed> {
   return openCodes(services, tx, network, shown);
 }
 
-/** An officer who has looked a coming passphrase up is one of the ways aboard to learn it (guard: D1). */
+/** An officer who has looked a coming passphrase up is one of the ways aboard to learn it (D1). */
 async function countAsWay(
   { services, tx, actor, vesselId, now }: Asked,
   shown: readonly ToShow[],

@@ -1,7 +1,8 @@
 import type { RotationView } from '../../shared/api/rotations.ts';
 import { AppError, notFound } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
-import { byActor, type VerbContext } from './changeNow.ts';
+import type { Verb } from '../http/verb.ts';
+import { byActor } from './by.ts';
 import { requireTypedBack } from './confirmAccessPoint.ts';
 import { handOutToBoat } from './handOut.ts';
 import { type KnownRotation, lockRotation } from './lockRotation.ts';
@@ -11,7 +12,7 @@ import { rotationEvent, takeStep } from './takeStep.ts';
 
 /** Somebody aboard cannot reach an access point: the change waits for somebody, and the screens say where. */
 export async function reportUnreachable(
-  context: VerbContext,
+  context: Verb,
   rotationId: string,
   accessPointId: string,
   note: string | undefined,
@@ -32,7 +33,7 @@ export async function reportUnreachable(
 
 /** An access point was found on something else than the passphrase in force. Nothing is overwritten silently. */
 export async function reportDrift(
-  context: VerbContext,
+  context: Verb,
   rotationId: string,
   accessPointId: string,
   seen: 'old' | 'other',
@@ -53,7 +54,7 @@ export async function reportDrift(
 
 /** The access point runs the passphrase in force again, proven by typing it back. */
 export async function acceptDrift(
-  context: VerbContext,
+  context: Verb,
   rotationId: string,
   accessPointId: string,
   typed: string,
@@ -84,7 +85,7 @@ export async function acceptDrift(
 }
 
 /** Lets the boat go on with the same ticket and the same passphrase. */
-export async function goOn(context: VerbContext, rotationId: string): Promise<RotationView> {
+export async function goOn(context: Verb, rotationId: string): Promise<RotationView> {
   const { services, tx, actor, now } = context;
   const known = await lockRotation(services, tx, actor.vesselId ?? '', rotationId);
   if (known.rotation.driver === 'by_hand') {
@@ -95,7 +96,7 @@ export async function goOn(context: VerbContext, rotationId: string): Promise<Ro
 }
 
 async function targetName(
-  { services, tx }: VerbContext,
+  { services, tx }: Verb,
   known: KnownRotation,
   accessPointId: string,
 ): Promise<string> {

@@ -3,9 +3,10 @@ import { may, planAction } from '../../shared/rules/permissions.ts';
 import type { Tx } from '../db/connection.ts';
 import { forbidden } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
+import type { Verb } from '../http/verb.ts';
 import type { Services } from '../services.ts';
 import type { By } from './by.ts';
-import { byActor, type VerbContext } from './changeNow.ts';
+import { byActor } from './by.ts';
 import { voidCards } from './comeIntoForce.ts';
 import { type KnownRotation, lockRotation } from './lockRotation.ts';
 import { viewRotation } from './present.ts';
@@ -14,7 +15,7 @@ import { takeStep } from './takeStep.ts';
 
 /** Cancels a change that has not left yet; a passphrase staged for it is never used. The plan sets the next. */
 export async function cancelRotation(
-  context: VerbContext,
+  context: Verb,
   rotationId: string,
 ): Promise<{ cancelled: RotationView; next: RotationView | null }> {
   const { services, tx, actor, now } = context;

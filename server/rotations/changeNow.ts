@@ -3,36 +3,18 @@ import type { RotationState } from '../../shared/api/common.ts';
 import type { ChangeReason, PlanReason, RotationView } from '../../shared/api/rotations.ts';
 import { may, planAction } from '../../shared/rules/permissions.ts';
 import { OPEN_STATES } from '../../shared/rules/rotation.ts';
+import { requireFresh } from '../auth/requireFresh.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, forbidden } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
-import { type Actor, FRESH_MS } from '../http/session.ts';
+import type { Verb } from '../http/verb.ts';
 import type { Services } from '../services.ts';
-import type { By } from './by.ts';
+import { byActor } from './by.ts';
 import { crossingUntil, handOutToBoat } from './handOut.ts';
 import { lockNetwork, lockRotation } from './lockRotation.ts';
 import { viewRotation } from './present.ts';
 import { stageAll } from './stage.ts';
 import { takeStep } from './takeStep.ts';
-
-export interface VerbContext {
-  readonly services: Services;
-  readonly tx: Tx;
-  readonly actor: Actor;
-  readonly now: Date;
-}
-
-export const byActor = ({ actor, now }: Pick<VerbContext, 'actor' | 'now'>): By => ({
-  now,
-  actor: { id: actor.personId, name: actor.name },
-});
-
-/** Fresh proof of identity where a route only sometimes needs one. Throws `step_up`. */
-export function requireFresh({ actor, now }: Pick<VerbContext, 'actor' | 'now'>): void {
-  if (now.getTime() - actor.provedAt.getTime() > FRESH_MS) {
-    throw new AppError('step_up', 'Please confirm it is you, then this goes through.');
-  }
-}
 
 /**
  * Changes a network's passphrase now: what was planned is brought forward, a new passphrase is staged at once,
@@ -41,7 +23,7 @@ export function requireFresh({ actor, now }: Pick<VerbContext, 'actor' | 'now'>)
  * identity, for not waiting until two ways aboard are confirmed.
  */
 export async function changeNow(
-  context: VerbContext,
+  context: Verb,
   networkId: string,
   wanted: { readonly reason: ChangeReason; readonly urgent: boolean },
 ): Promise<RotationView> {
@@ -71,7 +53,7 @@ export async function changeNow(
 
 /** Plans a network's change for an instant a person chose. */
 export async function planFor(
-  context: VerbContext,
+  context: Verb,
   networkId: string,
   wanted: { readonly dueAt: Date; readonly reason: ChangeReason },
 ): Promise<RotationView> {
@@ -123,7 +105,7 @@ interface Forward {
 
 /** The network's planned or staged change at its new time, or a new planned one. Refused when one is under way. */
 async function bringForward(
-  { services, tx, actor, now }: VerbContext,
+  { services, tx, actor, now }: Verb,
   networkId: string,
   network: { driver: 'by_hand' | 'rehearsal'; epoch: number },
   { dueAt, reasons, mode }: Forward,

@@ -2,9 +2,10 @@ import type { RotationView } from '../../shared/api/rotations.ts';
 import { AppError } from '../errors.ts';
 import { faultPoint } from '../faultPoint.ts';
 import { type Actor, sameText } from '../http/session.ts';
+import type { Verb } from '../http/verb.ts';
 import { openPassphrase } from '../passphrases/sealPassphrase.ts';
 import type { Services } from '../services.ts';
-import { byActor, type VerbContext } from './changeNow.ts';
+import { byActor } from './by.ts';
 import { lockRotation } from './lockRotation.ts';
 import { observe, personReporter } from './observe.ts';
 import { viewRotation } from './present.ts';
@@ -53,7 +54,7 @@ export function differenceInLength(typed: string, right: string): string {
 
 /** Throws `invalid` about the field `typed` unless it is the passphrase, to the character. */
 export async function requireTypedBack(
-  { services, tx }: VerbContext,
+  { services, tx }: Verb,
   passphraseId: string,
   typed: string,
 ): Promise<void> {
@@ -68,7 +69,7 @@ export async function requireTypedBack(
  * would lock everyone out. When it is the last one, the new passphrase comes into force in this transaction.
  */
 export async function confirmAccessPoint(
-  context: VerbContext,
+  context: Verb,
   rotationId: string,
   accessPointId: string,
   typed: string,

@@ -5,9 +5,10 @@ import { goingBack, type Rotation, type Ticket } from '../../shared/rules/rotati
 import type { Tx } from '../db/connection.ts';
 import { AppError, forbidden } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
+import type { Verb } from '../http/verb.ts';
 import type { Services } from '../services.ts';
+import { byActor } from './by.ts';
 import { dropStaged } from './cancelRotation.ts';
-import { byActor, type VerbContext } from './changeNow.ts';
 import { handOutToBoat } from './handOut.ts';
 import { type KnownRotation, lockRotation } from './lockRotation.ts';
 import { viewRotation } from './present.ts';
@@ -19,7 +20,7 @@ import { rotationEvent, takeStep } from './takeStep.ts';
  * target is the old passphrase, and which is verified on every access point like any other. A change that
  * waits for somebody who never opened its sheet has not left, so its passphrase is dropped and the plan goes on.
  */
-export async function giveUp(context: VerbContext, rotationId: string): Promise<RotationView> {
+export async function giveUp(context: Verb, rotationId: string): Promise<RotationView> {
   const { services, tx, actor, now } = context;
   const by = byActor(context);
   const known = await lockRotation(services, tx, actor.vesselId ?? '', rotationId);
@@ -80,7 +81,7 @@ async function insertBack(
   known: KnownRotation,
   id: string,
   back: Rotation,
-  { actor, now }: VerbContext,
+  { actor, now }: Verb,
 ): Promise<void> {
   const { db } = services;
   await db.run(

@@ -3,8 +3,8 @@ import type { RotationList } from '../../shared/api/rotations.ts';
 import { UNDER_WAY } from '../../shared/rules/rotation.ts';
 import { AppError } from '../errors.ts';
 import { sameText } from '../http/session.ts';
+import type { Verb } from '../http/verb.ts';
 import type { Services } from '../services.ts';
-import type { VerbContext } from './changeNow.ts';
 import { presentSummary, SUMMARY, type SummaryRow } from './present.ts';
 
 /** How far the calendar looks ahead, in milliseconds. */
@@ -12,7 +12,7 @@ const CALENDAR_MS = 42 * 86_400_000;
 
 /** What is planned in the next six weeks or under way, and a page of what is over or in force. */
 export async function listRotations(
-  { services, tx, actor, now }: VerbContext,
+  { services, tx, actor, now }: Verb,
   asked: { readonly networkId?: string; readonly after?: string; readonly limit: number },
 ): Promise<RotationList> {
   const bind = { vessel: actor.vesselId, network: asked.networkId ?? null };

@@ -5,6 +5,7 @@ import type { Evidence, Rotation, Seen, Way } from '../../shared/rules/rotation.
 import type { WifiSecurity } from '../../shared/rules/wifi.ts';
 import type { Tx } from '../db/connection.ts';
 import { notFound } from '../errors.ts';
+import { lockLog } from '../handovers/lockLog.ts';
 import type { Services } from '../services.ts';
 
 /** A rotation as the rules see it, with what the server knows around it. */
@@ -69,14 +70,7 @@ export async function lockRotation(
   });
 }
 
-/** The lock every change of a vessel's rotations takes first. */
-export async function lockLog(services: Services, tx: Tx, vesselId: string): Promise<void> {
-  await services.db.run(tx, 'SELECT 1 FROM log_heads WHERE vessel_id = $vessel FOR UPDATE', {
-    vessel: vesselId,
-  });
-}
-
-/** Reads rotations whose locks the caller's claim holds already. */
+/** Reads a rotation whose locks the caller's claim holds already. */
 export async function readClaimed(services: Services, tx: Tx, rotationId: string): Promise<KnownRotation> {
   return readLocked(services, tx, 'r.id = $id', { id: rotationId });
 }

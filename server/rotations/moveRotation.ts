@@ -2,18 +2,16 @@ import type { RotationView } from '../../shared/api/rotations.ts';
 import { may, planAction } from '../../shared/rules/permissions.ts';
 import { forbidden } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
-import { byActor, crossingIsOn, type VerbContext } from './changeNow.ts';
+import type { Verb } from '../http/verb.ts';
+import { byActor } from './by.ts';
+import { crossingIsOn } from './changeNow.ts';
 import { crossingUntil } from './handOut.ts';
 import { lockRotation } from './lockRotation.ts';
 import { viewRotation } from './present.ts';
 import { rotationEvent, takeStep } from './takeStep.ts';
 
 /** Moves a planned or staged change to another instant that a person chose. */
-export async function moveRotation(
-  context: VerbContext,
-  rotationId: string,
-  dueAt: Date,
-): Promise<RotationView> {
+export async function moveRotation(context: Verb, rotationId: string, dueAt: Date): Promise<RotationView> {
   const { services, tx, actor, now } = context;
   const known = await lockRotation(services, tx, actor.vesselId ?? '', rotationId);
   if (!may(actor.roles, planAction(known.audience))) throw forbidden();

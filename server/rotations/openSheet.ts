@@ -1,10 +1,13 @@
 import type { EntrySheet } from '../../shared/api/rotations.ts';
+import { partsForReading } from '../../shared/rules/passphrase.ts';
+import { requireFresh } from '../auth/requireFresh.ts';
 import { AppError } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
 import { recordHandover } from '../handovers/recordHandover.ts';
+import type { Verb } from '../http/verb.ts';
 import { holderOf } from '../passphrases/reveal.ts';
 import { openPassphrase } from '../passphrases/sealPassphrase.ts';
-import { byActor, requireFresh, type VerbContext } from './changeNow.ts';
+import { byActor } from './by.ts';
 import { crossingUntil, SHEET_REPORTS_WITHIN_MS } from './handOut.ts';
 import { lockRotation } from './lockRotation.ts';
 import { presentTargets } from './present.ts';
@@ -14,7 +17,7 @@ import { rotationEvent, takeStep } from './takeStep.ts';
  * Opens the entry sheet. "Handed out" is stored, the opening is in the log and the opener among the holders
  * before the passphrase is opened, and the request's transaction commits before its first octet is answered.
  */
-export async function openSheet(context: VerbContext, rotationId: string): Promise<EntrySheet> {
+export async function openSheet(context: Verb, rotationId: string): Promise<EntrySheet> {
   const { services, tx, actor, now } = context;
   const by = byActor(context);
   const known = await lockRotation(services, tx, actor.vesselId ?? '', rotationId);
@@ -65,17 +68,11 @@ export async function openSheet(context: VerbContext, rotationId: string): Promi
 }
 
 /** Whether the target is older than what it replaces: a change that goes back. */
-async function cameBefore({ services, tx }: VerbContext, to: string, from: string): Promise<boolean> {
+async function cameBefore({ services, tx }: Verb, to: string, from: string): Promise<boolean> {
   const row = await services.db.row<{ back: boolean }>(
     tx,
     'SELECT t.generation < f.generation AS back FROM passphrases t, passphrases f WHERE t.id = $to AND f.id = $from',
     { to, from },
   );
   return row?.back ?? false;
-}
-
-/** Words with their hyphens; anything else in fours. Joined they are the passphrase. */
-export function partsForReading(passphrase: string): string[] {
-  const words = passphrase.split(/(?<=-)/);
-  return words.length >= 3 ? words : (passphrase.match(/.{1,4}/gs) ?? [passphrase]);
 }

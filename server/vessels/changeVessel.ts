@@ -11,7 +11,7 @@ import { shipInstant } from '../../shared/rules/shipTime.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, invalid, notFound } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
-import { lockLog } from '../rotations/lockRotation.ts';
+import { lockLog } from '../handovers/lockLog.ts';
 import { replanNetwork } from '../rotations/replan.ts';
 import type { Services } from '../services.ts';
 import { shipZones } from './readVessel.ts';

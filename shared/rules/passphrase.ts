@@ -158,9 +158,15 @@ export interface ReadingPiece {
 }
 
 /** Splits a passphrase into words and what separates them; the pieces joined give the passphrase again. */
-export function splitForReading(passphrase: string): ReadingPiece[] {
+export function wordsAndSeparators(passphrase: string): ReadingPiece[] {
   return passphrase
     .split(/([-_ ./]+)/)
     .map((text, index) => ({ text, separator: index % 2 === 1 }))
     .filter((piece) => piece.text !== '');
+}
+
+/** A passphrase cut where the eye may rest: words with their hyphens, anything else in fours. Joined they are it again. */
+export function partsForReading(passphrase: string): string[] {
+  const words = passphrase.split(/(?<=-)/);
+  return words.length >= 3 ? words : (passphrase.match(/.{1,4}/gs) ?? [passphrase]);
 }

@@ -1,5 +1,5 @@
 import { Fragment } from 'react';
-import { splitForReading } from '../../shared/rules/passphrase.ts';
+import { wordsAndSeparators } from '../../shared/rules/passphrase.ts';
 
 /**
  * A passphrase word by word, separators light, breaking only after a separator. Ligatures are off; spaces count, so
@@ -8,7 +8,7 @@ import { splitForReading } from '../../shared/rules/passphrase.ts';
 export function PassphraseWords({ children }: { children: string }) {
   return (
     <span translate="no" className="font-medium [font-variant-ligatures:none]" dir="ltr">
-      {splitForReading(children).map(({ text, separator }, index) =>
+      {wordsAndSeparators(children).map(({ text, separator }, index) =>
         separator ? (
           // biome-ignore lint/suspicious/noArrayIndexKey: the pieces of one passphrase have no other identity
           <Fragment key={index}>

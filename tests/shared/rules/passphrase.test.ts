@@ -5,9 +5,9 @@ import {
   checkSsid,
   maskedDifference,
   passphraseCautions,
-  splitForReading,
   ssidCautions,
   ssidOctets,
+  wordsAndSeparators,
 } from '../../../shared/rules/passphrase.ts';
 
 function code(check: { ok: true } | { ok: false; code: string }): string {
@@ -143,21 +143,21 @@ describe('typing a passphrase back', () => {
 
 describe('reading aloud', () => {
   test('words and separators', () => {
-    expect(splitForReading('harbour-lantern-41')).toEqual([
+    expect(wordsAndSeparators('harbour-lantern-41')).toEqual([
       { text: 'harbour', separator: false },
       { text: '-', separator: true },
       { text: 'lantern', separator: false },
       { text: '-', separator: true },
       { text: '41', separator: false },
     ]);
-    expect(splitForReading('sillage42marine')).toEqual([{ text: 'sillage42marine', separator: false }]);
+    expect(wordsAndSeparators('sillage42marine')).toEqual([{ text: 'sillage42marine', separator: false }]);
   });
 
   test('nothing is lost or added', () => {
     fc.assert(
       fc.property(fc.string({ unit: fc.constantFrom(...'ab1-_ ./;') }), (text) => {
         expect(
-          splitForReading(text)
+          wordsAndSeparators(text)
             .map((piece) => piece.text)
             .join(''),
         ).toBe(text);
