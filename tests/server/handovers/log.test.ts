@@ -5,9 +5,9 @@ import { checkpointKey } from '../../../server/handovers/checkpoint.ts';
 import { verifyChain } from '../../../server/handovers/verifyChain.ts';
 import { eraseGuests } from '../../../server/voyages/eraseGuests.ts';
 import { useApp } from '../../support/app.ts';
+import { charterBoat } from '../../support/charterBoat.ts';
 import { Client } from '../../support/client.ts';
 import { factories } from '../../support/factories.ts';
-import { aboard } from '../voyages/aboard.ts';
 
 const app = useApp();
 const make = factories(app);
@@ -184,7 +184,7 @@ describe('R49: erasing a guest', () => {
     );
 
   test('on request: the name is nowhere, the entry stays, the chain holds', async () => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const partyId = await boat.party();
     const guestId = await boat.guest(partyId, 'Marguerite Sandoval');
     await boat.guest(partyId, 'Ben Vela');
@@ -219,7 +219,7 @@ describe('R49: erasing a guest', () => {
   });
 
   test("after the vessel's retention, by itself, and not a day before", async () => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const partyId = await boat.party('Halloran party', -2, 24);
     await boat.guest(partyId, 'Marguerite Sandoval');
     await boat.guest(partyId, 'Ben Vela');

@@ -2,15 +2,15 @@ import { randomUUID } from 'node:crypto';
 import { describe, expect, test } from 'vitest';
 import { endVisits } from '../../../server/voyages/endVisits.ts';
 import { useApp } from '../../support/app.ts';
+import { charterBoat } from '../../support/charterBoat.ts';
 import { factories } from '../../support/factories.ts';
-import { aboard } from './aboard.ts';
 
 const app = useApp();
 const make = factories(app);
 
 describe('the arrivals screen', () => {
   test('shows the party of now by cabin, its cards, and what was handed over', async () => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const [two, one] = [await boat.cabin('Cabin 2', 2), await boat.cabin('Cabin 1', 1)];
     await boat.party('Next party', 200, 300);
     const partyId = await boat.party();
@@ -52,7 +52,7 @@ describe('the arrivals screen', () => {
   });
 
   test("another vessel's party, network and guest are not found", async () => {
-    const [mine, theirs] = [await aboard(app, make), await aboard(app, make)];
+    const [mine, theirs] = [await charterBoat(app, make), await charterBoat(app, make)];
     const partyId = await theirs.party();
     const guestId = await theirs.guest(partyId);
     await mine.purser.get(`${mine.base}/arrivals?partyId=${partyId}`).expect(404);
@@ -69,7 +69,7 @@ describe('the arrivals screen', () => {
   });
 
   test('the ETO reads the calendar without names and nothing of guests', async () => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const stew = await boat.as('chief_stew');
     const eto = await boat.as('eto');
     const made = await stew
@@ -112,7 +112,7 @@ describe('a list', () => {
     ['UTF-16 the other way round', 'UTF-16', Buffer.from(LIST, 'utf16le').swap16().toString('base64')],
     ['Latin-1', 'Latin-1', bytes(LIST, 'latin1')],
   ])('in %s', async (_name, encoding, base64) => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const cabinId = await boat.cabin('Cabin 1', 1);
     const seen = await boat.purser.post(`${boat.base}/arrivals/preview`, { base64 }).expect(200);
     expect(seen.body).toMatchObject({ encoding, rows: [{ name: 'Zoë Brandt', cabinId, language: 'fr' }] });
@@ -131,13 +131,13 @@ describe('a list', () => {
     ['no headings', { text: 'Anna\nBen' }, 'text'],
     ['an unknown field', { text: 'Name\nAnna', keep: true }, 'keep'],
   ])('%s is refused', async (_name, body, field) => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const refused = await boat.purser.post(`${boat.base}/arrivals/preview`, body).expect(422);
     expect(Object.keys(refused.body.errors)).toEqual([field]);
   });
 
   test('more than 2 MB is refused, exactly 2 MB is read', async () => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const list = `Name\nAnna\n${' '.repeat(2 * 1024 * 1024 - 10)}`;
     await boat.purser
       .post(`${boat.base}/arrivals/preview`, { base64: Buffer.from(list).toString('base64') })
@@ -149,7 +149,7 @@ describe('a list', () => {
   });
 
   test('nothing is kept until it is confirmed; then exactly what was', async () => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const partyId = await boat.party();
     const text = 'Name,Cabin,Language,Passport\nAnna Brandt,1,it,K8842913\n,2,en,K1\n"=Ben",9,de,K2\n';
     const seen = await boat.purser.post(`${boat.base}/arrivals/preview`, { text }).expect(200);
@@ -179,7 +179,7 @@ describe('a list', () => {
   });
 
   test('one wrong line stores none, each named by its place', async () => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const partyId = await boat.party();
     const row = { name: 'Anna' };
     const send = (rows: object[]) => boat.purser.post(`${boat.base}/arrivals/import`, { partyId, rows });
@@ -195,7 +195,7 @@ describe('a list', () => {
   });
 
   test('a new party and its guests in one go, or neither', async () => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const newParty = { name: 'Vela party', arrivesAt: boat.hours(5), leavesAt: boat.hours(2) };
     const wrong = await boat.purser
       .post(`${boat.base}/arrivals/import`, { newParty, rows: [{ name: 'Anna' }] })
@@ -218,7 +218,7 @@ describe('a list', () => {
 
 describe('guests and visitors', () => {
   test('a guest is corrected, and one who was given nothing is taken off', async () => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const partyId = await boat.party();
     const guestId = await boat.guest(partyId);
     const path = `${boat.base}/guests/${guestId}`;
@@ -237,7 +237,7 @@ describe('guests and visitors', () => {
   });
 
   test('a visitor has an end time, and is ashore when it passes', async () => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     await boat.purser
       .post(`${boat.base}/visitors`, { name: 'Mira Kos', untilAt: boat.hours(-1) })
       .expect(422);
@@ -269,7 +269,7 @@ describe('guests and visitors', () => {
   });
 
   test('a party moves with its guests, and a guest who would not fit is named', async () => {
-    const boat = await aboard(app, make);
+    const boat = await charterBoat(app, make);
     const partyId = await boat.party('Halloran party', 10, 100);
     const own = boat.hours(20);
     await boat.guest(partyId, 'Anna');

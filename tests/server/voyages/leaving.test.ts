@@ -1,14 +1,14 @@
 import { describe, expect, test } from 'vitest';
 import { useApp } from '../../support/app.ts';
+import { charterBoat } from '../../support/charterBoat.ts';
 import { factories } from '../../support/factories.ts';
-import { aboard } from './aboard.ts';
 
 const app = useApp();
 const make = factories(app);
 
 /** A vessel with one guest aboard, one card printed for them, and how to hand over. */
 async function ready() {
-  const boat = await aboard(app, make);
+  const boat = await charterBoat(app, make);
   const partyId = await boat.party();
   const guestId = await boat.guest(partyId);
   const card = await boat.printCard(guestId);

@@ -1,13 +1,13 @@
 import { randomUUID } from 'node:crypto';
-import type { VesselRole } from '../../../shared/rules/permissions.ts';
-import type { TestApp } from '../../support/app.ts';
-import { Client } from '../../support/client.ts';
-import type { factories } from '../../support/factories.ts';
+import type { VesselRole } from '../../shared/rules/permissions.ts';
+import { aboard } from './aboard.ts';
+import type { TestApp } from './app.ts';
+import type { factories } from './factories.ts';
 
 let serial = 2000;
 
 /** A vessel with a guest network, two cabins, a party aboard and people to ask for. */
-export async function aboard(app: TestApp, make: ReturnType<typeof factories>) {
+export async function charterBoat(app: TestApp, make: ReturnType<typeof factories>) {
   const vesselId = await make.vessel();
   await make.accessPoint(vesselId, 'Salon');
   const network = await make.network(vesselId, {
@@ -15,12 +15,9 @@ export async function aboard(app: TestApp, make: ReturnType<typeof factories>) {
     live: `guests-of-${vesselId.slice(0, 13)}`,
     liveAt: new Date(app.clock.now().getTime() - 2 * 86_400_000),
   });
-  const run = (sql: string, bind: Record<string, unknown>) =>
-    app.services.db.transaction({ kind: 'system' }, (tx) => app.services.db.run(tx, sql, bind));
+  const { as: signedIn, look, write: run, logged } = aboard(app);
   const rows = <T extends object>(sql: string, bind: Record<string, unknown> = {}) =>
-    app.services.db.transaction({ kind: 'system' }, (tx) =>
-      app.services.db.rows<T>(tx, sql, { vessel: vesselId, ...bind }),
-    );
+    look<T>(sql, { vessel: vesselId, ...bind });
   const cabin = async (name: string, position: number) => {
     const id = randomUUID();
     await run(
@@ -29,8 +26,7 @@ export async function aboard(app: TestApp, make: ReturnType<typeof factories>) {
     );
     return id;
   };
-  const as = async (role: VesselRole) =>
-    new Client(app, await make.session((await make.member(vesselId, role)).id));
+  const as = (role: VesselRole) => signedIn(vesselId, role);
   const base = `/vessels/${vesselId}`;
   const purser = await as('purser');
   const hours = (count: number) => new Date(app.clock.now().getTime() + count * 3_600_000).toISOString();
@@ -68,9 +64,6 @@ export async function aboard(app: TestApp, make: ReturnType<typeof factories>) {
     );
     return made;
   };
-  const kinds = async () =>
-    (await rows<{ kind: string }>('SELECT kind FROM log_entries WHERE vessel_id = $vessel ORDER BY seq')).map(
-      ({ kind }) => kind,
-    );
+  const kinds = () => logged(vesselId);
   return { vesselId, network, base, purser, as, run, rows, cabin, party, guest, printCard, hours, kinds };
 }
