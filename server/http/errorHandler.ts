@@ -16,7 +16,7 @@ function known(error: unknown): AppError {
       cause: error,
     });
   const code = sqlState(error);
-  if (error instanceof DatabaseError && (code === null || /^(08|57P|53)/.test(code)))
+  if (error instanceof DatabaseError && (code === null || /^(08|57P|57014|53|25P03)/.test(code)))
     return new AppError('unavailable', AWAY, { retryAfter: 3, cause: error });
   if (code === '40001' || code === '40P01' || code === '55P03')
     return new AppError('conflict', 'Two changes met. Look again, then repeat yours.', { cause: error });

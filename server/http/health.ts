@@ -6,7 +6,7 @@ import type { Services } from '../services.ts';
 export function health(services: Services): RequestHandler {
   return async (_request, response) => {
     try {
-      await services.db.sequelize.query('SELECT 1');
+      await services.db.ping();
     } catch (cause) {
       throw new AppError('unavailable', 'The database does not answer.', { retryAfter: 3, cause });
     }
