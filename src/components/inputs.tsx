@@ -73,7 +73,7 @@ export function Checkbox({ label, hint, error, className, ...input }: CheckboxPr
           aria-invalid={error ? true : undefined}
           className={TICK}
         />
-        <span>{label}</span>
+        <span className="min-w-0">{label}</span>
       </label>
       {hint ? (
         <p id={`${id}-hint`} className="pl-8 text-sm text-soft">

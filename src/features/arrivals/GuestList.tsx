@@ -72,7 +72,7 @@ function GuestRow({ guest, zone, visitor, sameCabin, selected, onSelect }: Guest
       aria-pressed={selected}
       onClick={onSelect}
       className={cx(
-        '-mx-2.5 grid min-h-14 w-[calc(100%+1.25rem)] grid-cols-[1fr_auto] items-center gap-x-4 px-2.5 py-2 text-left @md:grid-cols-[9.5rem_1fr_auto]',
+        '-mx-2.5 grid min-h-14 w-[calc(100%+1.25rem)] grid-cols-[minmax(0,1fr)_auto] items-center gap-x-4 px-2.5 py-2 text-left @md:grid-cols-[9.5rem_minmax(0,1fr)_auto]',
         selected ? 'rounded-sm bg-land' : 'hover:bg-shoal',
       )}
     >

@@ -80,7 +80,11 @@ export function PrintForm({ vesselId, roles, networks }: PrintFormProps) {
   if (!network) return <p className="text-soft">There is no network you may print cards for yet.</p>;
   const staged = network.change && network.change.stagedAt !== null ? network.change : null;
   return (
-    <form onSubmit={submit} noValidate className="grid gap-x-10 gap-y-5 lg:grid-cols-2">
+    <form
+      onSubmit={submit}
+      noValidate
+      className="grid grid-cols-[minmax(0,1fr)] gap-x-10 gap-y-5 lg:grid-cols-2"
+    >
       <div className="flex flex-col gap-5">
         <Select
           label="Network"
@@ -141,7 +145,7 @@ export function PrintForm({ vesselId, roles, networks }: PrintFormProps) {
             {forCrew ? 'Nobody is on the crew list yet.' : 'Nobody is on a party’s list yet.'}
           </p>
         ) : (
-          <fieldset className="grid sm:grid-cols-2">
+          <fieldset className="grid min-w-0 sm:grid-cols-2">
             <legend className="text-sm font-medium">
               {chosen.length} of {people.length}
             </legend>

@@ -8,7 +8,7 @@ import { SafeText } from '../../components/SafeText.tsx';
 import { Scale } from '../../components/Scale.tsx';
 import { cx } from '../../lib/cx.ts';
 import { visibleText } from '../../lib/safeText.ts';
-import { plotAxis, plotX, swarm } from './plotLayout.ts';
+import { lanes, plotAxis, plotX, swarm } from './plotLayout.ts';
 
 const ROW = 66;
 const RADIUS = 5;
@@ -84,11 +84,10 @@ export function AgePlot({ dots }: { dots: readonly FleetDot[] }) {
                 ROW - 4,
               );
               // Marks that can be pressed keep a finger's distance (WCAG 2.2, 2.5.8: 24 px).
-              const past = swarm(
+              const past = lanes(
                 mine.filter((dot) => dot.ratio > 1),
                 xOf(TARGET),
-                TARGET,
-                ROW - 4,
+                TARGET * 2 + 1,
               );
               const worst = past.reduce<(typeof past)[number] | null>(
                 (top, one) => (one.item.ratio > Math.max(1, top?.item.ratio ?? 0) ? one : top),

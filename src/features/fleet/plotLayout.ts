@@ -59,3 +59,25 @@ export function swarm<T>(
   }
   return placed;
 }
+
+/**
+ * Places marks that are pressed so that none comes within `apart` pixels of another: alone in the middle of the row,
+ * in company in two lanes, and where both are taken as little further right as will do.
+ */
+export function lanes<T>(items: readonly T[], xOf: (item: T) => number, apart: number): Placed<T>[] {
+  const sorted = items.map((item) => ({ item, x: xOf(item) })).sort((a, b) => a.x - b.x);
+  const last = { upper: Number.NEGATIVE_INFINITY, lower: Number.NEGATIVE_INFINITY };
+  return sorted.map(({ item, x }, index) => {
+    const next = sorted[index + 1]?.x ?? Number.POSITIVE_INFINITY;
+    const alone = x - Math.max(last.upper, last.lower) >= apart && next - x >= apart;
+    if (alone) {
+      last.upper = x;
+      last.lower = x;
+      return { item, x, y: 0 };
+    }
+    const lane = last.upper <= last.lower ? 'upper' : 'lower';
+    const at = Math.max(x, last[lane] + apart);
+    last[lane] = at;
+    return { item, x: at, y: ((lane === 'upper' ? -1 : 1) * apart) / 2 };
+  });
+}
