@@ -41,6 +41,10 @@ export interface TestApp {
   readonly recorded: Recorded[];
   /** Ids of every session a client of this file used; nothing but a cookie may hold one. */
   readonly sessionIds: Set<string>;
+  /** Vessel → the log's head when it was last found whole. */
+  readonly headsSeen: Map<string, string>;
+  /** True where the file's tests change logs behind the server's back, so that they cannot hold afterwards. */
+  readonly spoilsLogs: boolean;
 }
 
 export const testEnv = (appUrl: string): NodeJS.ProcessEnv => ({
@@ -56,7 +60,7 @@ export const testEnv = (appUrl: string): NodeJS.ProcessEnv => ({
 });
 
 /** The real application on a real database of its own, for one test file. */
-export function useApp(): TestApp {
+export function useApp(options: { spoilsLogs?: boolean } = {}): TestApp {
   const holder: { app?: TestApp } = {};
   let lines = '';
   const database = testDatabase();
@@ -87,6 +91,8 @@ export function useApp(): TestApp {
       origin: config.publicUrl,
       recorded: [],
       sessionIds: new Set(),
+      headsSeen: new Map(),
+      spoilsLogs: options.spoilsLogs ?? false,
     };
   });
   afterEach(async () => {

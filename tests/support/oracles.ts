@@ -3,6 +3,8 @@ import { promisify } from 'node:util';
 import { QueryTypes } from 'sequelize';
 import { expect } from 'vitest';
 import type { Place } from '../../server/db/vault.ts';
+import { checkpointKey } from '../../server/handovers/checkpoint.ts';
+import { verifyChain } from '../../server/handovers/verifyChain.ts';
 import { isMailKind, type MailData, writeMail } from '../../server/mail/messages.ts';
 import { outboxPlace } from '../../server/mail/queueMail.ts';
 import { secretPlace } from '../../server/passphrases/sealPassphrase.ts';
@@ -200,6 +202,27 @@ async function rotationsHold(test: TestApp): Promise<void> {
   expect(broken, 'G3: rotation invariants').toEqual([]);
 }
 
+/** G2: every log that grew since it was last looked at holds from its start, and under every signed head it has. */
+async function logsHold(test: TestApp): Promise<void> {
+  const { db, config } = test.services;
+  const key = checkpointKey(config.logSigningSeed);
+  const bad = await db.transaction({ kind: 'system' }, async (tx) => {
+    const heads = await db.rows<{ vessel_id: string; hash: Buffer }>(
+      tx,
+      'SELECT vessel_id, hash FROM log_heads WHERE seq > 0 ORDER BY vessel_id FOR UPDATE',
+    );
+    const found: string[] = [];
+    for (const { vessel_id: vesselId, hash } of heads) {
+      if (test.headsSeen.get(vesselId) === hash.toString('hex')) continue;
+      const verdict = await verifyChain(db, tx, vesselId, { key, outside: [] });
+      if (verdict.bad) found.push(`${vesselId}: entry ${verdict.bad.seq}: ${verdict.bad.why}`);
+      test.headsSeen.set(vesselId, hash.toString('hex'));
+    }
+    return found;
+  });
+  expect(bad, 'G2: a log is not what was written').toEqual([]);
+}
+
 /** G5: no connection borrowed, no transaction open, no advisory lock left. */
 async function nothingHeld(test: TestApp): Promise<void> {
   const left = await test.services.db.sequelize.query<{ what: string }>(
@@ -230,6 +253,7 @@ async function nothingUnhandled(): Promise<void> {
 export async function oracles(test: TestApp, recorded: readonly Recorded[]): Promise<void> {
   await nothingUnhandled();
   await nothingLeaked(test, recorded);
+  if (!test.spoilsLogs) await logsHold(test);
   await rotationsHold(test);
   await nothingHeld(test);
 }

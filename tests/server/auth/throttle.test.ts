@@ -171,4 +171,6 @@ const pick = (test: TestApp): TestApp => ({
   origin: test.origin,
   recorded: test.recorded,
   sessionIds: test.sessionIds,
+  headsSeen: test.headsSeen,
+  spoilsLogs: test.spoilsLogs,
 });

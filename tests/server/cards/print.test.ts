@@ -223,6 +223,24 @@ describe('printing join cards', () => {
     await print(captain, 'owner', { blanks: 1, format: 'wallet' }).expect(200);
   });
 
+  test('R42: a file is called by serial numbers, whatever boat and network are called (RFC 6266)', async () => {
+    const boat = await world.boat({ name: `../e"t;*=''x` });
+    await world.write("UPDATE networks SET ssid = $ssid WHERE vessel_id = $v AND audience = 'guest'", {
+      ssid: '..\\CON"; x=é',
+      v: boat.vesselId,
+    });
+    const captain = await boat.as('captain');
+    for (const blanks of [1, 3]) {
+      const answer = await captain
+        .post(`${boat.base}/networks/${boat.networks.guest.id}/cards/print`, { blanks, format: 'wallet' })
+        .expect(200);
+      expect(answer.headers['content-disposition']).toMatch(
+        /^attachment; filename="Cards? \S+-\d+( to \S+-\d+)?\.pdf"$/,
+      );
+      expect(answer.headers['content-disposition']).not.toMatch(/[/\\;*']{2}|\.\.|CON/);
+    }
+  });
+
   test('R13: the owner’s network asks for a fresh proof, the guests’ never does', async () => {
     const boat = await world.boat();
     const captain = await boat.as('captain');

@@ -16,7 +16,7 @@ import { type Verdict, verifyChain } from '../../../server/handovers/verifyChain
 import { testEnv, useApp } from '../../support/app.ts';
 import { factories } from '../../support/factories.ts';
 
-const app = useApp();
+const app = useApp({ spoilsLogs: true });
 const make = factories(app);
 let owner: pg.Client;
 
