@@ -82,6 +82,7 @@ export async function renewSession(
   setSessionCookie(services.config, given.response, sessionId);
 }
 
+/** Slow part: checks the password of today, refuses an easy new one, and hashes it. Throws `invalid` naming the field. */
 export async function preparePasswordChange(
   services: Services,
   actor: Actor,
@@ -115,6 +116,7 @@ export async function changePassword(
   });
 }
 
+/** Where the person is signed in now, the last used first. */
 export async function listDevices(services: Services, tx: Tx, actor: Actor): Promise<DeviceView[]> {
   const now = services.clock.now();
   const rows = await services.db.rows<{
@@ -138,6 +140,7 @@ export async function listDevices(services: Services, tx: Tx, actor: Actor): Pro
   }));
 }
 
+/** Ends one of the person's own sessions. Throws `not_found` for another's or one that has ended. */
 export async function endDevice(services: Services, tx: Tx, actor: Actor, sessionId: string): Promise<void> {
   const ended = await services.db.run(
     tx,

@@ -69,6 +69,7 @@ export async function listInvitations(
   }));
 }
 
+/** Ends an open invitation; the link in its mail no longer works. Throws `not_found` for one that is not open here. */
 export async function withdrawInvitation(
   services: Services,
   tx: Tx,

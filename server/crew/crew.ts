@@ -2,7 +2,7 @@ import { randomUUID } from 'node:crypto';
 import type { z } from 'zod';
 import { type Language, language } from '../../shared/api/common.ts';
 import type { CrewView, crewBody } from '../../shared/api/crew.ts';
-import { may, type VesselRole } from '../../shared/rules/permissions.ts';
+import { may } from '../../shared/rules/permissions.ts';
 import { endRoles } from '../auth/members.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, invalid, notFound } from '../errors.ts';
@@ -11,14 +11,7 @@ import { markBack, markDeparted } from '../handovers/holders.ts';
 import { lockLog } from '../handovers/lockLog.ts';
 import { replanNetwork } from '../rotations/replan.ts';
 import type { Services } from '../services.ts';
-
-export interface Change {
-  readonly services: Services;
-  readonly tx: Tx;
-  readonly vesselId: string;
-  readonly actor: { readonly personId: string; readonly name: string; readonly roles: readonly VesselRole[] };
-  readonly now: Date;
-}
+import type { Change } from '../vessels/change.ts';
 
 interface CrewRow {
   id: string;

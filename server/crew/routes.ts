@@ -1,16 +1,8 @@
 import * as api from '../../shared/api/crew.ts';
 import { endpoint } from '../http/endpoint.ts';
-import { addCrew, type Change, changeCrew, listCrew, signBackOn, signOff } from './crew.ts';
+import { changeOf } from '../vessels/change.ts';
+import { addCrew, changeCrew, listCrew, signBackOn, signOff } from './crew.ts';
 import { readOwnCode, readOwnPage } from './ownPage.ts';
-
-type Wide = Omit<Change, 'vesselId'> & { readonly params: { readonly vesselId: string } };
-const changeOf = ({ services, tx, actor, params, now }: Wide): Change => ({
-  services,
-  tx,
-  actor,
-  now,
-  vesselId: params.vesselId,
-});
 
 export const crewRoutes = [
   endpoint(api.readOwnPage, {

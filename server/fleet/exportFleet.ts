@@ -1,10 +1,11 @@
+import { AUDIENCE_NAMES } from '../../shared/rules/permissions.ts';
 import type { Tx } from '../db/connection.ts';
 import { notFound } from '../errors.ts';
 import { type CsvCell, csvText } from '../http/csv.ts';
 import type { FileReply } from '../http/reply.ts';
 import type { Services } from '../services.ts';
 import { fleetFacts, type NetworkFacts, type VesselFacts } from './fleetFacts.ts';
-import { AUDIENCE_WORDS, ageDays, guessWords, nextChangeOf, pastLimit, standingOf } from './judge.ts';
+import { ageDays, guessWords, nextChangeOf, pastLimit, standingOf } from './judge.ts';
 
 const HEADING = [
   'Vessel',
@@ -52,7 +53,7 @@ function line(vessel: VesselFacts, network: NetworkFacts, now: Date): CsvCell[] 
   return [
     vessel.name,
     network.ssid,
-    AUDIENCE_WORDS[network.audience],
+    AUDIENCE_NAMES[network.audience],
     age === null ? null : Math.floor(age),
     network.limitDays,
     pastLimit(network, now) ? 'yes' : 'no',

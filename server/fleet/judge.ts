@@ -1,6 +1,6 @@
 import type { FleetFigures } from '../../shared/api/fleet.ts';
-import type { NextChangeKind, Standing } from '../../shared/rules/fleet.ts';
-import type { Audience } from '../../shared/rules/permissions.ts';
+import { type NextChangeKind, STANDINGS, type Standing } from '../../shared/rules/fleet.ts';
+import { AUDIENCE_NAMES, AUDIENCES, type Audience } from '../../shared/rules/permissions.ts';
 import { ageInDays, standingOf as standingRule } from '../../shared/rules/standing.ts';
 import { roughGuess } from '../../shared/rules/strength.ts';
 import type { NetworkFacts, VesselFacts } from './fleetFacts.ts';
@@ -64,13 +64,10 @@ export function guessRank(words: string): number {
   return place < 0 ? GUESS_ORDER.length : place;
 }
 
-const AUDIENCE_ORDER: readonly Audience[] = ['owner', 'guest', 'crew'];
-export const AUDIENCE_WORDS: Record<Audience, string> = { owner: 'Owner', guest: 'Guest', crew: 'Crew' };
-
 /** The vessel's network that is guessed soonest, in words; of equals the first audience. */
 export function weakest(networks: readonly NetworkFacts[]): { audience: Audience; words: string } | null {
   let found: { audience: Audience; words: string; rank: number } | null = null;
-  for (const audience of AUDIENCE_ORDER) {
+  for (const audience of AUDIENCES) {
     for (const network of networks) {
       const words = network.audience === audience ? guessWords(network) : null;
       if (words === null) continue;
@@ -78,7 +75,7 @@ export function weakest(networks: readonly NetworkFacts[]): { audience: Audience
       if (found === null || rank < found.rank) found = { audience, words, rank };
     }
   }
-  return found && { audience: found.audience, words: `${AUDIENCE_WORDS[found.audience]}, ${found.words}` };
+  return found && { audience: found.audience, words: `${AUDIENCE_NAMES[found.audience]}, ${found.words}` };
 }
 
 export interface NextChange {
@@ -127,11 +124,9 @@ export function nextChange(networks: readonly NetworkFacts[]): NextChange {
   return changes[0] ?? NOTHING_PLANNED;
 }
 
-const STANDING_ORDER: readonly Standing[] = ['in_order', 'due', 'overdue', 'exposed'];
-
 export function worstStanding(standings: readonly Standing[]): Standing {
   return standings.reduce<Standing>(
-    (worst, one) => (STANDING_ORDER.indexOf(one) > STANDING_ORDER.indexOf(worst) ? one : worst),
+    (worst, one) => (STANDINGS.indexOf(one) > STANDINGS.indexOf(worst) ? one : worst),
     'in_order',
   );
 }

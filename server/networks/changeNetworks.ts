@@ -2,22 +2,13 @@ import { randomUUID } from 'node:crypto';
 import type { NetworkBody, Policy } from '../../shared/api/networks.ts';
 import { GENERATED_BITS_MIN, NETWORKS_MAX } from '../../shared/rules/limits.ts';
 import type { Audience } from '../../shared/rules/permissions.ts';
-import type { Tx } from '../db/connection.ts';
 import { AppError, invalid, notFound } from '../errors.ts';
 import { appendLog, type LogEvent } from '../handovers/appendLog.ts';
 import { lockLog } from '../handovers/lockLog.ts';
 import { voidCards } from '../rotations/comeIntoForce.ts';
 import { lockNetwork } from '../rotations/lockRotation.ts';
 import { replanNetwork } from '../rotations/replan.ts';
-import type { Services } from '../services.ts';
-
-export interface Change {
-  readonly services: Services;
-  readonly tx: Tx;
-  readonly vesselId: string;
-  readonly actor: { readonly personId: string; readonly name: string };
-  readonly now: Date;
-}
+import type { Change } from '../vessels/change.ts';
 
 /**
  * Rules a new network starts with, by its audience. Guests change after every party and at the latest in a

@@ -2,7 +2,8 @@ import { randomUUID } from 'node:crypto';
 import { AppError, notFound } from '../errors.ts';
 import { lockNetwork } from '../rotations/lockRotation.ts';
 import { replanNetwork } from '../rotations/replan.ts';
-import { type Change, log } from './changeNetworks.ts';
+import type { Change } from '../vessels/change.ts';
+import { log } from './changeNetworks.ts';
 
 /** Writes down that the passphrase in force leaked: the network is exposed, and its change moves up. */
 export async function reportLeak(change: Change, networkId: string, note: string | undefined): Promise<void> {

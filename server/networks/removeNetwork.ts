@@ -4,7 +4,7 @@ import { dropStaged } from '../rotations/cancelRotation.ts';
 import { voidCards } from '../rotations/comeIntoForce.ts';
 import { lockNetwork, lockRotation } from '../rotations/lockRotation.ts';
 import { takeStep } from '../rotations/takeStep.ts';
-import type { Change } from './changeNetworks.ts';
+import type { Change } from '../vessels/change.ts';
 
 /**
  * Takes a network away: what was planned for it is cancelled, its passphrases are retired and its cards void, and

@@ -1,22 +1,13 @@
 import * as api from '../../shared/api/networks.ts';
 import { endpoint } from '../http/endpoint.ts';
 import { crossingUntil } from '../rotations/handOut.ts';
-import { addNetwork, type Change, changeNetwork, changePolicy } from './changeNetworks.ts';
+import { changeOf } from '../vessels/change.ts';
+import { addNetwork, changeNetwork, changePolicy } from './changeNetworks.ts';
 import { reportLeak, withdrawLeak } from './leaks.ts';
 import { type Asking, readNetwork, readNetworkDetail, readNetworks } from './readNetworks.ts';
 import { removeNetwork } from './removeNetwork.ts';
 
-type Wide = Omit<Change, 'vesselId'> & {
-  readonly params: { readonly vesselId: string };
-  readonly actor: { readonly personId: string; readonly roles: Asking['roles'] };
-};
-const changeOf = ({ services, tx, actor, params, now }: Wide): Change => ({
-  services,
-  tx,
-  actor,
-  now,
-  vesselId: params.vesselId,
-});
+type Wide = Parameters<typeof changeOf>[0];
 const askingOf = ({ actor, params, now }: Wide): Asking => ({
   vesselId: params.vesselId,
   personId: actor.personId,

@@ -8,21 +8,12 @@ import type {
   vesselBody,
 } from '../../shared/api/vessels.ts';
 import { shipInstant } from '../../shared/rules/shipTime.ts';
-import type { Tx } from '../db/connection.ts';
 import { AppError, invalid, notFound } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
 import { lockLog } from '../handovers/lockLog.ts';
 import { replanNetwork } from '../rotations/replan.ts';
-import type { Services } from '../services.ts';
+import type { Change } from './change.ts';
 import { shipZones } from './readVessel.ts';
-
-export interface Change {
-  readonly services: Services;
-  readonly tx: Tx;
-  readonly vesselId: string;
-  readonly actor: { readonly personId: string; readonly name: string };
-  readonly now: Date;
-}
 
 const by = ({ actor }: Change) => ({ id: actor.personId, name: actor.name });
 

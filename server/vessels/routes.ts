@@ -1,6 +1,7 @@
 import * as api from '../../shared/api/vessels.ts';
 import { endpoint } from '../http/endpoint.ts';
 import { addVessel } from './addVessel.ts';
+import { changeOf } from './change.ts';
 import {
   addZone,
   changeSource,
@@ -10,15 +11,6 @@ import {
   setCabins,
 } from './changeVessel.ts';
 import { readSettings, readVessel } from './readVessel.ts';
-
-type Wide = Parameters<typeof changeVessel>[0] & { readonly params: { readonly vesselId: string } };
-const changeOf = ({ services, tx, actor, params, now }: Omit<Wide, 'vesselId'>) => ({
-  services,
-  tx,
-  actor,
-  now,
-  vesselId: params.vesselId,
-});
 
 export const vesselRoutes = [
   endpoint(api.addVessel, { handle: (context) => addVessel(context, context.body) }),
