@@ -22,6 +22,17 @@ export class VaultError extends Error {}
 
 const NONCE = 12;
 const TAG = 16;
+/** Nonces asked of the system at once: one call of it costs more than sealing a passphrase. */
+const NONCES_AHEAD = 128;
+
+let ahead = Buffer.alloc(0);
+/** The next random nonce; each octet of what was drawn ahead is given out once. */
+function nextNonce(): Buffer {
+  if (ahead.length < NONCE) ahead = randomBytes(NONCE * NONCES_AHEAD);
+  const nonce = ahead.subarray(0, NONCE);
+  ahead = ahead.subarray(NONCE);
+  return nonce;
+}
 
 function additionalData(place: Place, keyId: string): Buffer {
   return Buffer.from(
@@ -48,7 +59,7 @@ export class Vault {
     const keyId = this.ring.current;
     const key = this.ring.keys.get(keyId);
     if (!key) throw new VaultError('The current key is missing');
-    const nonce = randomBytes(NONCE);
+    const nonce = nextNonce();
     const cipher = createCipheriv('aes-256-gcm', key.subarray(0, 32), nonce, { authTagLength: TAG });
     cipher.setAAD(additionalData(place, keyId));
     const body = Buffer.concat([cipher.update(plain, 'utf8'), cipher.final()]);

@@ -7,6 +7,7 @@ import { migration as clockwork } from './0005_clockwork.ts';
 import { migration as takesOver } from './0006_takes_over.ts';
 import { migration as lastCheckpoint } from './0007_last_checkpoint.ts';
 import { migration as fencesOnce } from './0008_fences_once.ts';
+import { migration as leanRotations } from './0009_lean_rotations.ts';
 
 /** In the order in which they run. A migration that has run anywhere is never edited again. */
 export const migrations: readonly Migration[] = [
@@ -18,4 +19,5 @@ export const migrations: readonly Migration[] = [
   takesOver,
   lastCheckpoint,
   fencesOnce,
+  leanRotations,
 ];

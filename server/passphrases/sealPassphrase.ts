@@ -84,50 +84,46 @@ export async function sealPassphrase(services: Services, tx: Tx, given: NewPassp
   return id;
 }
 
-/** A passphrase to be stored whose generation is known already, under the lock on its network. */
+/** A passphrase to be stored whose id, fingerprint and, under the lock on its network, generation are known already. */
 export interface NumberedPassphrase extends NewPassphrase {
+  readonly id: string;
   readonly generation: number;
+  readonly fingerprint: Buffer;
 }
 
-/** Which of these their vessels had before, by keyed fingerprint: their places in the list. */
+/** Which of these their vessels had before, by keyed fingerprint, which covers the vessel: their places in the list. */
 export async function findReused(
   services: Services,
   tx: Tx,
-  given: readonly Pick<NewPassphrase, 'vesselId' | 'passphrase'>[],
+  given: readonly Pick<NumberedPassphrase, 'vesselId' | 'fingerprint'>[],
 ): Promise<Set<number>> {
-  const rows = await services.db.rows<{ place: number }>(
+  const rows = await services.db.rows<{ place: string }>(
     tx,
-    `SELECT g.place FROM jsonb_to_recordset($given::jsonb) AS g(place integer, vessel_id uuid, fingerprint text)
-     JOIN passphrase_secrets s ON s.vessel_id = g.vessel_id AND s.fingerprint = decode(g.fingerprint, 'hex')`,
+    `SELECT g.place - 1 AS place FROM unnest($vessels::uuid[], $fingerprints::bytea[])
+       WITH ORDINALITY AS g(vessel_id, fingerprint, place)
+     JOIN passphrase_secrets s ON s.vessel_id = g.vessel_id AND s.fingerprint = g.fingerprint`,
     {
-      given: JSON.stringify(
-        given.map(({ vesselId, passphrase }, place) => ({
-          place,
-          vessel_id: vesselId,
-          fingerprint: services.vault.fingerprint(vesselId, passphrase).toString('hex'),
-        })),
-      ),
+      vessels: given.map(({ vesselId }) => vesselId),
+      fingerprints: given.map(({ fingerprint }) => fingerprint),
     },
   );
-  return new Set(rows.map((row) => row.place));
+  return new Set(rows.map(({ place }) => Number(place)));
 }
 
 /**
- * Stores many passphrases sealed, in one statement; answers their ids in the same order. The caller holds the
- * locks on their networks, has counted the generations up, and has made sure none was used before: a reused
- * one fails the statement by the unique fingerprint.
+ * Stores many passphrases sealed, in one statement. The caller holds the locks on their networks, counts their
+ * generations up, and has made sure none was used before: a reused one fails the statement by the unique fingerprint.
  */
 export async function sealPassphrases(
   services: Services,
   tx: Tx,
   given: readonly NumberedPassphrase[],
-): Promise<string[]> {
+): Promise<void> {
   const { db, vault } = services;
   const rows = given.map((one) => {
-    const id = randomUUID();
-    const { keyId, sealed } = vault.seal(secretPlace({ ...one, id }), one.passphrase);
+    const { keyId, sealed } = vault.seal(secretPlace(one), one.passphrase);
     return {
-      id,
+      id: one.id,
       vessel_id: one.vesselId,
       network_id: one.networkId,
       generation: one.generation,
@@ -136,7 +132,7 @@ export async function sealPassphrases(
       created_at: one.now,
       key_id: keyId,
       sealed: sealed.toString('hex'),
-      fingerprint: vault.fingerprint(one.vesselId, one.passphrase).toString('hex'),
+      fingerprint: one.fingerprint.toString('hex'),
     };
   });
   await db.run(
@@ -151,7 +147,6 @@ export async function sealPassphrases(
      SELECT id, vessel_id, key_id, decode(sealed, 'hex'), decode(fingerprint, 'hex') FROM given`,
     { rows: JSON.stringify(rows) },
   );
-  return rows.map((row) => row.id);
 }
 
 /** Opens a passphrase. Callers are the few deliberate ways out, and each writes the log line first. */

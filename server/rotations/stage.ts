@@ -1,3 +1,4 @@
+import { randomUUID } from 'node:crypto';
 import { POLICY_BITS_MAX, WORDS_MAX, WORDS_MIN } from '../../shared/rules/limits.ts';
 import type { Rotation } from '../../shared/rules/rotation.ts';
 import { step } from '../../shared/rules/rotationStep.ts';
@@ -59,20 +60,22 @@ export async function stageAll(
   );
   const made = await makePassphrases(services, tx, rows, options.make ?? ((words) => generate({ words })));
   faultPoint('S2');
-  const ids = await sealPassphrases(
+  await sealPassphrases(
     services,
     tx,
-    rows.map((row, index) => ({
-      vesselId: row.vessel_id,
+    made.map(({ row, id, vesselId, passphrase, bits, fingerprint }) => ({
+      id,
+      vesselId,
       networkId: row.network_id,
-      passphrase: made[index]?.passphrase ?? '',
-      bits: made[index]?.bits ?? 0,
+      passphrase,
+      fingerprint,
+      bits,
       origin: 'generated',
       generation: row.last_generation + 1,
       now: by.now,
     })),
   );
-  const staged = rows.map((row, index) => stagedRow(row, ids[index] ?? '', by.now));
+  const staged = made.map(({ row, id }) => stagedRow(row, id, by.now));
   await storeStaged(services, tx, staged, by.now);
   await appendLog(
     services,
@@ -99,30 +102,36 @@ function wordsOf({ words, least_bits }: StageRow): number {
   return bitsOfWords(wanted) >= least_bits ? wanted : wordsForBits(Math.min(least_bits, POLICY_BITS_MAX));
 }
 
+interface Made extends Generated {
+  readonly id: string;
+  readonly row: StageRow;
+  readonly vesselId: string;
+  readonly fingerprint: Buffer;
+}
+
 async function makePassphrases(
   services: Services,
   tx: Tx,
   rows: readonly StageRow[],
   make: (words: number) => Generated,
-): Promise<Generated[]> {
-  const made = rows.map((row) => make(wordsOf(row)));
+): Promise<Made[]> {
+  const draw = (row: StageRow): Made => {
+    const drawn = make(wordsOf(row));
+    const fingerprint = services.vault.fingerprint(row.vessel_id, drawn.passphrase);
+    return { ...drawn, id: randomUUID(), row, vesselId: row.vessel_id, fingerprint };
+  };
+  let made = rows.map(draw);
   for (let round = 0; round < 5; round++) {
-    const given = rows.map((row, index) => ({
-      vesselId: row.vessel_id,
-      passphrase: made[index]?.passphrase ?? '',
-    }));
-    const again = await findReused(services, tx, given);
+    const again = await findReused(services, tx, made);
+    // The fingerprint covers the vessel too: two of the same are one passphrase aboard one vessel.
     const seen = new Set<string>();
-    for (const [index, { vesselId, passphrase }] of given.entries()) {
-      const key = `${vesselId} ${passphrase}`;
+    for (const [index, { fingerprint }] of made.entries()) {
+      const key = fingerprint.toString('base64');
       if (seen.has(key)) again.add(index);
       seen.add(key);
     }
     if (again.size === 0) return made;
-    for (const index of again) {
-      const row = rows[index];
-      if (row) made[index] = make(wordsOf(row));
-    }
+    made = made.map((one, index) => (again.has(index) ? draw(one.row) : one));
   }
   throw new AppError('internal', 'No new passphrase could be made: every one drawn was used before.');
 }
@@ -155,6 +164,8 @@ function stagedRow(row: StageRow, toId: string, now: Date) {
     mode: row.mode,
     epoch: ticket.epoch,
     ticket: ticket.number,
+    generation: row.last_generation + 1,
+    from_id: row.from_id,
     to_id: toId,
     due_at: row.due_at.toISOString(),
     access_points: row.access_points,
@@ -162,10 +173,7 @@ function stagedRow(row: StageRow, toId: string, now: Date) {
   };
 }
 
-/**
- * Written with lookups by key only: the fences between vessels hide from the planner how many rows there are, so
- * it would join a list of rows with a whole table by trying every pair.
- */
+/** Everything was read under the locks on networks and rotations; what was altered since all the same is refused. */
 async function storeStaged(
   services: Services,
   tx: Tx,
@@ -173,42 +181,26 @@ async function storeStaged(
   now: Date,
 ): Promise<void> {
   const { db } = services;
-  const ids = staged.map((one) => one.id);
-  await db.run(
+  const done = await db.row<{ counted: number; stored: number }>(
     tx,
-    'UPDATE networks SET last_ticket = last_ticket + 1, last_generation = last_generation + 1 WHERE id = ANY($ids::uuid[])',
-    { ids: staged.map((one) => one.network_id) },
+    `WITH s AS (
+       SELECT * FROM jsonb_to_recordset($rows::jsonb) AS s(id uuid, vessel_id uuid, network_id uuid, state text, driver text,
+         epoch integer, ticket bigint, generation integer, from_id uuid, to_id uuid, access_points uuid[])),
+     counted AS (
+       UPDATE networks n SET last_ticket = s.ticket, last_generation = s.generation FROM s
+       WHERE n.id = s.network_id AND n.last_ticket = s.ticket - 1 AND n.last_generation = s.generation - 1
+       RETURNING n.id),
+     stored AS (
+       UPDATE rotations r SET state = s.state, driver = s.driver, epoch = s.epoch, ticket = s.ticket,
+         from_passphrase_id = s.from_id, to_passphrase_id = s.to_id, staged_at = $now, updated_at = $now FROM s
+       WHERE r.id = s.id AND r.state = 'planned' RETURNING r.id),
+     frozen AS (
+       INSERT INTO rotation_targets(rotation_id, access_point_id, vessel_id)
+       SELECT s.id, a.id, s.vessel_id FROM s, unnest(s.access_points) AS a(id))
+     SELECT (SELECT count(*) FROM counted)::integer AS counted, (SELECT count(*) FROM stored)::integer AS stored`,
+    { rows: JSON.stringify(staged), now },
   );
-  const stored = await db.run<{ id: string; ticket: string; to_passphrase_id: string }>(
-    tx,
-    `UPDATE rotations r SET state = 'staged', driver = v.driver, epoch = v.epoch, ticket = n.last_ticket, staged_at = $now,
-       updated_at = $now,
-       from_passphrase_id = (SELECT id FROM passphrases f
-         WHERE f.network_id = r.network_id AND f.live_at IS NOT NULL AND f.retired_at IS NULL),
-       to_passphrase_id = (SELECT id FROM passphrases t
-         WHERE t.network_id = r.network_id AND t.generation = n.last_generation)
-     FROM networks n, vessels v WHERE r.id = ANY($ids::uuid[]) AND n.id = r.network_id AND v.id = r.vessel_id
-     RETURNING r.id, r.ticket, r.to_passphrase_id`,
-    { ids, now },
-  );
-  const known = new Map(stored.map((row) => [row.id, row]));
-  for (const one of staged) {
-    const row = known.get(one.id);
-    if (row?.to_passphrase_id !== one.to_id || Number(row.ticket) !== one.ticket || one.state !== 'staged') {
-      throw new AppError(
-        'conflict',
-        'This change was altered while it was being prepared. It is tried again.',
-      );
-    }
+  if (done?.counted !== staged.length || done.stored !== staged.length) {
+    throw new AppError('conflict', 'This change was altered while it was being prepared. It is tried again.');
   }
-  await db.run(
-    tx,
-    `INSERT INTO rotation_targets(rotation_id, access_point_id, vessel_id)
-     SELECT * FROM unnest($rotations::uuid[], $accessPoints::uuid[], $vessels::uuid[])`,
-    {
-      rotations: staged.flatMap((one) => one.access_points.map(() => one.id)),
-      accessPoints: staged.flatMap((one) => one.access_points),
-      vessels: staged.flatMap((one) => one.access_points.map(() => one.vessel_id)),
-    },
-  );
 }

@@ -45,7 +45,7 @@ const sum = (counts: readonly number[]): number => counts.reduce((total, count) 
 
 interface Batch {
   readonly done: number;
-  /** False when the claim came back short: nothing more to do now. */
+  /** False when there is nothing more to do now. */
   readonly more: boolean;
 }
 
@@ -81,7 +81,7 @@ export async function stageBatch(
      WHERE r.state = 'planned' AND r.due_at <= $guestUntil AND (n.audience = 'guest' OR r.due_at <= $until)
        AND n.removed_at IS NULL AND EXISTS (
          SELECT 1 FROM access_points a WHERE a.vessel_id = n.vessel_id AND a.removed_at IS NULL)
-     ORDER BY r.due_at LIMIT $batch FOR UPDATE OF r, n, h SKIP LOCKED`,
+     ORDER BY r.due_at, r.vessel_id LIMIT $batch FOR UPDATE OF r, n, h SKIP LOCKED`,
     {
       guestUntil: new Date(by.now.getTime() + GUEST_LEAD_MS),
       until: new Date(by.now.getTime() + LEAD_MS),
@@ -96,7 +96,8 @@ export async function stageBatch(
     by,
     options,
   );
-  return { done: claimed.length, more: claimed.length === batch };
+  // One that was passed over belongs to the other lane, which looks again when it is done with what it holds.
+  return { done: claimed.length, more: claimed.length > 0 };
 }
 
 /** Claims staged rotations that are due and hands them out, or asks for somebody where they are entered by hand. */

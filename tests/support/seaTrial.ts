@@ -111,9 +111,11 @@ export async function layDueChanges(services: Services, networks: number): Promi
       rows.map((row) => {
         const { passphrase, bits } = generate();
         return {
+          id: randomUUID(),
           vesselId: row.vessel_id,
           networkId: row.id,
           passphrase,
+          fingerprint: services.vault.fingerprint(row.vessel_id, passphrase),
           bits,
           origin: 'generated' as const,
           generation: 1,
