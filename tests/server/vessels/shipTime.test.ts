@@ -51,10 +51,14 @@ describe("ship's time", () => {
     const vesselId = await make.vessel();
     const captain = await as(vesselId, 'captain');
     const zones = `/vessels/${vesselId}/zones`;
-    for (const zone of ['Europe/Atlantis', '+02:00', "Europe/Paris'--", 'Europe/Paris\u0000']) {
+    for (const zone of ['Europe/Atlantis', '+02:00', "Europe/Paris'--"]) {
       const answer = await captain.post(zones, { zone, fromLocal: '2026-07-01T02:00' }).expect(422);
       expect(answer.body.errors.zone[0]).toContain('IANA');
     }
+    const zero = await captain
+      .post(zones, { zone: 'Europe/Paris\u0000', fromLocal: '2026-07-01T02:00' })
+      .expect(422);
+    expect(zero.body.errors.zone[0]).toContain('zero character');
     for (const fromLocal of ['2026-02-30T02:00', '2026-06-20T24:00', '2026-13-01T00:00']) {
       const answer = await captain.post(zones, { zone: 'Europe/Athens', fromLocal }).expect(422);
       expect(answer.body.errors.fromLocal[0]).toContain('no such date');
