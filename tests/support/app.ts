@@ -97,8 +97,12 @@ export function useApp(options: { spoilsLogs?: boolean } = {}): TestApp {
   });
   afterEach(async () => {
     if (!holder.app) return;
-    await oracles(holder.app, holder.app.recorded);
-    holder.app.recorded.length = 0;
+    try {
+      await oracles(holder.app, holder.app.recorded);
+    } finally {
+      // What one test did is not held against the next.
+      holder.app.recorded.length = 0;
+    }
   });
   afterAll(async () => {
     if (holder.app) await dumpHoldsNoSecret(holder.app);
