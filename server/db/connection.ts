@@ -138,7 +138,11 @@ export class Database {
     const { connection, finished } = tx as Held;
     if (!connection || finished) throw new Error('This transaction is over; its statements belong inside');
     const known = statement(sql);
-    const result = await send(connection, { text: known.text, values: values(known, bind) });
+    const result = await send(connection, {
+      name: known.name,
+      text: known.text,
+      values: values(known, bind),
+    });
     return result.rows as T[];
   }
 

@@ -2,6 +2,8 @@ import { DatabaseError, ForeignKeyConstraintError, UniqueConstraintError } from 
 
 /** A statement with numbered places, and the names whose values go there. */
 export interface Statement {
+  /** Under which a connection keeps its plan; undefined where it is planned each time. */
+  readonly name: string | undefined;
   readonly text: string;
   readonly names: readonly string[];
 }
@@ -9,6 +11,18 @@ export interface Statement {
 /** Statements are written in the code, so there are only so many; beyond this they are read anew each time. */
 const KNOWN_MAX = 2000;
 const known = new Map<string, Statement>();
+
+const frequent = new Map<string, string>();
+
+/**
+ * Marks a statement that nearly every request asks: a connection plans it once and keeps the plan (PostgreSQL manual,
+ * PREPARE). Name the columns of such a statement one by one, and keep it from statements whose best plan depends on
+ * how many rows a vessel has.
+ */
+export function often(sql: string): string {
+  if (!frequent.has(sql)) frequent.set(sql, `often_${frequent.size + 1}`);
+  return sql;
+}
 
 /** Reads `$name` as a bound parameter, the same name as the same one; `$$` stands for a dollar sign. */
 export function statement(sql: string): Statement {
@@ -20,7 +34,7 @@ export function statement(sql: string): Statement {
     const at = names.indexOf(name);
     return `$${at >= 0 ? at + 1 : names.push(name)}`;
   });
-  const made = { text, names };
+  const made = { name: frequent.get(sql), text, names };
   if (known.size < KNOWN_MAX) known.set(sql, made);
   return made;
 }

@@ -12,6 +12,7 @@ import jwt from 'jsonwebtoken';
 import type { DealerRole, VesselRole } from '../../shared/rules/permissions.ts';
 import type { Config } from '../config.ts';
 import type { Tx } from '../db/connection.ts';
+import { often } from '../db/statement.ts';
 import type { Services } from '../services.ts';
 
 export const SESSION_COOKIE = '__Host-quayword';
@@ -147,21 +148,7 @@ interface SessionRow {
   second_factor_roles: string[];
 }
 
-/**
- * Finds the live session, its person, and their roles on the vessel, and sets the transaction's scope to
- * what they may see: all in one statement. Answers null when the session has ended, is idle or is unknown.
- */
-export async function resolveActor(
-  services: Services,
-  tx: Tx,
-  sessionId: string,
-  place: { vesselId: string | null; fleet: boolean },
-): Promise<Actor | null> {
-  const now = services.clock.now();
-  const sessionHash = sha256(sessionId);
-  const row = await services.db.row<SessionRow>(
-    tx,
-    `WITH seen AS (
+const SESSION = often(`WITH seen AS (
        SELECT s.public_id, s.person_id, s.last_seen_at, s.proved_at, s.second_factor_at,
               p.name, p.email, p.locale, p.totp_enrolled_at
        FROM sessions s JOIN people p ON p.id = s.person_id
@@ -174,7 +161,8 @@ export async function resolveActor(
      trade AS (
        SELECT d.dealer_id, d.role, l.second_factor_roles FROM dealer_members d JOIN dealers l ON l.id = d.dealer_id, seen
        WHERE d.person_id = seen.person_id AND d.ended_at IS NULL AND d.suspended_at IS NULL)
-     SELECT seen.*, held.roles, trade.dealer_id, trade.role AS dealer_role,
+     SELECT seen.public_id, seen.person_id, seen.last_seen_at, seen.proved_at, seen.second_factor_at,
+       seen.name, seen.email, seen.locale, seen.totp_enrolled_at, held.roles, trade.dealer_id, trade.role AS dealer_role,
        coalesce(CASE WHEN $vessel::uuid IS NOT NULL AND cardinality(held.roles) > 0
                      THEN vessel_second_factor_roles($vessel::uuid)
                      WHEN $fleet THEN trade.second_factor_roles END, '{}') AS second_factor_roles,
@@ -182,15 +170,27 @@ export async function resolveActor(
        set_config('quayword.scope', CASE WHEN $fleet AND trade.dealer_id IS NOT NULL THEN 'fleet'
                                          WHEN cardinality(held.roles) > 0 THEN 'vessel' ELSE '' END, true),
        set_config('quayword.dealer', CASE WHEN $fleet THEN coalesce(trade.dealer_id::text, '') ELSE '' END, true)
-     FROM seen CROSS JOIN held LEFT JOIN trade ON true`,
-    {
-      hash: sessionHash,
-      now,
-      idle: new Date(now.getTime() - IDLE_MS),
-      vessel: place.vesselId,
-      fleet: place.fleet,
-    },
-  );
+     FROM seen CROSS JOIN held LEFT JOIN trade ON true`);
+
+/**
+ * Finds the live session, its person, and their roles on the vessel, and sets the transaction's scope to
+ * what they may see: all in one statement. Answers null when the session has ended, is idle or is unknown.
+ */
+export async function resolveActor(
+  services: Services,
+  tx: Tx,
+  sessionId: string,
+  place: { vesselId: string | null; fleet: boolean },
+): Promise<Actor | null> {
+  const now = services.clock.now();
+  const sessionHash = sha256(sessionId);
+  const row = await services.db.row<SessionRow>(tx, SESSION, {
+    hash: sessionHash,
+    now,
+    idle: new Date(now.getTime() - IDLE_MS),
+    vessel: place.vesselId,
+    fleet: place.fleet,
+  });
   if (!row) return null;
   const asked = new Set(row.second_factor_roles);
   const used: readonly string[] = place.fleet && row.dealer_role ? [row.dealer_role] : row.roles;

@@ -1,6 +1,7 @@
 import type { GuestView } from '../../shared/api/arrivals.ts';
 import { language } from '../../shared/api/common.ts';
 import type { Tx } from '../db/connection.ts';
+import { often } from '../db/statement.ts';
 import { notFound } from '../errors.ts';
 import { type HandedNetwork, handedNetworks } from '../handovers/passphraseFor.ts';
 import type { Services } from '../services.ts';
@@ -43,6 +44,11 @@ LEFT JOIN LATERAL (
   SELECT p.id, p.serial FROM cards p WHERE p.guest_id = g.id AND p.passphrase_id = want.id AND p.state = 'printed'
   ORDER BY p.printed_at DESC, p.serial DESC LIMIT 1) k ON true`;
 
+/** A party's guests by cabin, then the visitors who are not gone since `$since`. */
+export const GUESTS_ABOARD = often(`${GUESTS} WHERE g.vessel_id = $vessel
+  AND (g.party_id = $party::uuid OR (g.party_id IS NULL AND g.until_at > $since AND g.erased_at IS NULL))
+ORDER BY g.party_id IS NULL, c.position NULLS LAST, c.name, g.position, g.from_at, g.id`);
+
 const wants = (network: HandedNetwork | null) => ({
   live: network?.live?.passphraseId ?? null,
   staged: network?.staged?.passphraseId ?? null,
@@ -60,18 +66,12 @@ export async function guestsOf(
     readonly network: HandedNetwork | null;
   },
 ): Promise<GuestRecord[]> {
-  return services.db.rows<GuestRecord>(
-    tx,
-    `${GUESTS} WHERE g.vessel_id = $vessel
-       AND (g.party_id = $party::uuid OR (g.party_id IS NULL AND g.until_at > $since AND g.erased_at IS NULL))
-     ORDER BY g.party_id IS NULL, c.position NULLS LAST, c.name, g.position, g.from_at, g.id`,
-    {
-      vessel: asked.vesselId,
-      party: asked.partyId,
-      since: asked.visitorsSince,
-      ...wants(asked.network),
-    },
-  );
+  return services.db.rows<GuestRecord>(tx, GUESTS_ABOARD, {
+    vessel: asked.vesselId,
+    party: asked.partyId,
+    since: asked.visitorsSince,
+    ...wants(asked.network),
+  });
 }
 
 /** One guest or visitor as the arrivals screen shows them. Throws `not_found`. */

@@ -1,5 +1,6 @@
 import type { ArrivalsView } from '../../shared/api/arrivals.ts';
 import type { Source } from '../../shared/api/common.ts';
+import { often } from '../db/statement.ts';
 import { notFound } from '../errors.ts';
 import { handedNetwork, NETWORKS, type NetworkRow } from '../handovers/passphraseFor.ts';
 import type { Verb } from '../http/verb.ts';
@@ -21,7 +22,7 @@ interface HeadRow {
 type Dated<T> = { [K in keyof T]: Date extends T[K] ? Exclude<T[K], Date> | string : T[K] };
 
 // Read at every arrival on every tablet: one statement for all but the guests, one for them.
-const HEAD = `
+const HEAD = often(`
 SELECT v.name, v.source,
   (SELECT z.zone FROM ship_zones z WHERE z.vessel_id = v.id
      ORDER BY z.from_at > $now, CASE WHEN z.from_at > $now THEN z.from_at - $now ELSE $now - z.from_at END LIMIT 1) AS zone,
@@ -29,7 +30,7 @@ SELECT v.name, v.source,
      FROM cabins c WHERE c.vessel_id = v.id) AS cabins,
   (SELECT coalesce(json_agg(to_json(around)), '[]') FROM (${PARTIES_AROUND}) around) AS parties,
   (SELECT coalesce(json_agg(to_json(handed)), '[]') FROM (${NETWORKS}) handed) AS networks
-FROM vessels v WHERE v.id = $vessel`;
+FROM vessels v WHERE v.id = $vessel`);
 
 /** The arrivals screen: the party asked for, or the one of now, by cabin, with who was given what. */
 export async function readArrivals(
