@@ -7,8 +7,8 @@ import { sentenceFor } from '../../lib/errors.ts';
 import { changeSource } from './queries.ts';
 
 const AWAY: readonly { source: Source; label: string; done: string }[] = [
-  { source: 'cellular', label: 'We are on cellular now', done: 'On cellular now.' },
-  { source: 'satellite', label: 'We are on satellite now', done: 'On satellite now.' },
+  { source: 'cellular', label: 'On cellular now', done: 'On cellular now.' },
+  { source: 'satellite', label: 'On satellite now', done: 'On satellite now.' },
 ];
 
 /** What to tell guests while the boat is on the dock's network, and the way to say that she no longer is. */
@@ -27,7 +27,7 @@ export function DockCaution({ vesselId }: { vesselId: string }) {
   return (
     <Caution
       action={
-        <div className="-mb-2 -ml-4 flex flex-wrap">
+        <div className="-mt-2 -mb-2 -ml-4 flex flex-wrap">
           {AWAY.map(({ source, label }) => (
             <Button
               key={source}
