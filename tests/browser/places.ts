@@ -1,5 +1,6 @@
-import type { Page } from 'playwright-core';
+import type { Browser, Page } from 'playwright-core';
 import type { Services } from '../../server/services.ts';
+import { openWindow, signIn } from '../support/browser.ts';
 
 /** A page of the product as one person sees it. */
 export interface PlaceToLook {
@@ -63,3 +64,33 @@ export async function lookAt(page: Page, path: string): Promise<void> {
 /** Whether the page as a whole scrolls sideways. */
 export const scrollsSideways = (page: Page): Promise<boolean> =>
   page.evaluate(() => document.documentElement.scrollWidth > window.innerWidth);
+
+/** Puts a change of the crew network on its way, so that there is an entry sheet to look at. */
+export async function startCrewChange(
+  browser: Browser,
+  origin: string,
+  stew: { email: string; password: string },
+): Promise<void> {
+  const { page, context } = await openWindow(browser, origin, {
+    viewport: { width: 1280, height: 900 },
+  });
+  await signIn(page, stew);
+  const answer = await page.evaluate(async () => {
+    const session = await (await fetch('/api/session')).json();
+    const { vesselId } = session.memberships[0];
+    const { networks } = await (await fetch(`/api/vessels/${vesselId}/networks`)).json();
+    const crew = networks.find((network: { audience: string }) => network.audience === 'crew');
+    const done = await fetch(`/api/vessels/${vesselId}/networks/${crew.id}/rotations/now`, {
+      method: 'POST',
+      headers: {
+        'Content-Type': 'application/json',
+        'X-Quayword-CSRF': session.csrf,
+        'Idempotency-Key': crypto.randomUUID(),
+      },
+      body: JSON.stringify({ reason: 'routine' }),
+    });
+    return done.status;
+  });
+  if (answer !== 201) throw new Error(`The change could not be started (${answer})`);
+  await context.close();
+}

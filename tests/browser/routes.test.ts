@@ -5,42 +5,16 @@ import { beforeAll, describe, expect, test } from 'vitest';
 import { routes } from '../../src/app/routes.tsx';
 import { openWindow, signIn } from '../support/browser.ts';
 import { useDemo } from './demo.ts';
-import { lookAt, type PlaceToLook, placesToLook, scrollsSideways } from './places.ts';
+import { lookAt, type PlaceToLook, placesToLook, scrollsSideways, startCrewChange } from './places.ts';
 
 const demo = useDemo();
 const AXE = readFileSync(createRequire(import.meta.url).resolve('axe-core/axe.min.js'), 'utf8');
 
 let places: PlaceToLook[] = [];
 beforeAll(async () => {
-  await changeCrewNow();
+  await startCrewChange(demo.browser, demo.running.origin, demo.person('Chief stew'));
   places = await placesToLook(demo.running.services);
 });
-
-/** Puts a change of the crew network on its way, so that there is an entry sheet to look at. */
-async function changeCrewNow(): Promise<void> {
-  const { page, context } = await openWindow(demo.browser, demo.running.origin, {
-    viewport: { width: 1280, height: 900 },
-  });
-  await signIn(page, demo.person('Chief stew'));
-  const answer = await page.evaluate(async () => {
-    const session = await (await fetch('/api/session')).json();
-    const { vesselId } = session.memberships[0];
-    const { networks } = await (await fetch(`/api/vessels/${vesselId}/networks`)).json();
-    const crew = networks.find((network: { audience: string }) => network.audience === 'crew');
-    const done = await fetch(`/api/vessels/${vesselId}/networks/${crew.id}/rotations/now`, {
-      method: 'POST',
-      headers: {
-        'Content-Type': 'application/json',
-        'X-Quayword-CSRF': session.csrf,
-        'Idempotency-Key': crypto.randomUUID(),
-      },
-      body: JSON.stringify({ reason: 'routine' }),
-    });
-    return done.status;
-  });
-  expect(answer).toBe(201);
-  await context.close();
-}
 
 interface Finding {
   rule: string;

@@ -1,12 +1,13 @@
+import { execFileSync } from 'node:child_process';
 import { mkdirSync, rmSync, writeFileSync } from 'node:fs';
 import path from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { pino } from 'pino';
 import { layDemo } from '../../server/seeders/layDemo.ts';
-import { launchBrowser, openWindow, signIn } from '../support/browser.ts';
+import { launchBrowser, openWindow, settled, signIn } from '../support/browser.ts';
 import { serve } from '../support/server.ts';
 import { temporaryDatabase } from '../support/temporaryDatabase.ts';
-import { lookAt, placesToLook } from './places.ts';
+import { lookAt, placesToLook, startCrewChange } from './places.ts';
 
 /** `npm run shots`: every route, both themes, four widths, into `.shots/`, with a page to leaf through them. */
 const OUT = fileURLToPath(new URL('../../.shots/', import.meta.url));
@@ -18,6 +19,49 @@ const SIZES = [
 ];
 const THEMES = ['light', 'dark'] as const;
 
+/** The few small pictures that README shows: three screens and a cabin card as it is printed. */
+async function readmePictures(people: readonly SignIn[]): Promise<void> {
+  const out = path.join(OUT, 'readme');
+  mkdirSync(out, { recursive: true });
+  const screens = [
+    { role: 'Purser', name: 'arrivals', link: 'Arrivals', proof: 'Livia Quaranta' },
+    { role: 'Chief stew', name: 'networks', link: 'Networks', proof: 'Next six weeks' },
+    { role: 'Dealer, service desk', name: 'fleet', link: 'Fleet', proof: 'Boat last heard' },
+  ];
+  for (const { role, name, link, proof } of screens) {
+    const { page, context } = await openWindow(browser, running.origin, {
+      viewport: { width: 1180, height: 740 },
+      scale: 0.55,
+    });
+    await signIn(page, personOf(people, role));
+    await page.getByRole('link', { name: link, exact: true }).click();
+    await page.getByText(proof).first().waitFor();
+    await settled(page);
+    await page.screenshot({ path: path.join(out, `${name}.png`) });
+    if (name === 'arrivals') {
+      await page.getByRole('link', { name: 'Cards' }).click();
+      await page.getByLabel('Cabin cards').check();
+      const [download] = await Promise.all([
+        page.waitForEvent('download'),
+        page.getByRole('button', { name: /^Print \d+ cards/ }).click(),
+      ]);
+      const png = path.join(out, 'card');
+      execFileSync('pdftoppm', ['-r', '64', '-png', '-singlefile', '-f', '1', await download.path(), png]);
+    }
+    await context.close();
+  }
+}
+
+type SignIn = { role: string; vessel: string; email: string; password: string };
+
+function personOf(people: readonly SignIn[], role: string): SignIn {
+  const found = people.find(
+    (one) => one.role === role && (one.vessel === 'Tamarisk' || role.startsWith('Dealer')),
+  );
+  if (!found) throw new Error(`Nobody of the demo is ${role}`);
+  return found;
+}
+
 const database = await temporaryDatabase();
 const running = await serve(
   { ...process.env, DATABASE_APP_URL: database.appUrl, SMTP_URL: undefined },
@@ -25,8 +69,10 @@ const running = await serve(
 );
 const browser = await launchBrowser();
 try {
-  const people: { role: string; vessel: string; email: string; password: string }[] = [];
+  const people: SignIn[] = [];
   await layDemo(running.services, async (given) => void people.push(...given));
+  await readmePictures(people);
+  await startCrewChange(browser, running.origin, personOf(people, 'Chief stew'));
   const places = await placesToLook(running.services);
   rmSync(path.join(OUT, 'routes'), { recursive: true, force: true });
   mkdirSync(path.join(OUT, 'routes'), { recursive: true });
@@ -37,10 +83,7 @@ try {
         viewport: { width: 1180, height: 820 },
         theme,
       });
-      const person = people.find(
-        (one) => one.role === role && (one.vessel === 'Tamarisk' || role?.startsWith('Dealer')),
-      );
-      if (person) await signIn(page, person);
+      if (role) await signIn(page, personOf(people, role));
       for (const place of places.filter((one) => one.role === role)) {
         for (const size of SIZES) {
           await page.setViewportSize(size);

@@ -14,7 +14,8 @@ const FLAGS = [
 /** Debian's Chromium, headless. */
 export function launchBrowser(): Promise<Browser> {
   const executablePath = process.env.CHROMIUM ?? '/usr/bin/chromium';
-  if (!existsSync(executablePath)) throw new Error('Chromium is not installed. Run as root:  apt-get install chromium');
+  if (!existsSync(executablePath))
+    throw new Error('Chromium is not installed. Run as root:  apt-get install chromium');
   return chromium.launch({ executablePath, args: FLAGS });
 }
 
@@ -39,20 +40,23 @@ export interface Watched {
 export async function openWindow(
   browser: Browser,
   origin: string,
-  options: { viewport: Viewport; theme?: 'light' | 'dark'; touch?: boolean },
+  options: { viewport: Viewport; theme?: 'light' | 'dark'; touch?: boolean; scale?: number },
 ): Promise<Watched> {
   const context = await browser.newContext({
     baseURL: origin,
     viewport: options.viewport,
     colorScheme: options.theme ?? 'light',
     hasTouch: options.touch ?? false,
+    deviceScaleFactor: options.scale ?? 1,
     reducedMotion: 'reduce',
     locale: 'en-GB',
     acceptDownloads: true,
   });
   const trouble: Trouble[] = [];
   const page = await context.newPage();
-  page.on('pageerror', (error) => trouble.push({ where: page.url(), what: `script error: ${error.message}` }));
+  page.on('pageerror', (error) =>
+    trouble.push({ where: page.url(), what: `script error: ${error.message}` }),
+  );
   page.on('console', (message) => {
     // A refused request is told by its own answer; everything else a browser calls an error is one.
     if (message.type() === 'error' && !message.text().startsWith('Failed to load resource'))
