@@ -13,7 +13,7 @@ const make = () =>
   app.services.db.transaction({ kind: 'none' }, (tx) => firstDealer(app.services, tx, given));
 
 describe('the first dealer', () => {
-  test('sets a password by the link once, signs in, and must then set up a second factor to see the fleet', async () => {
+  test('sets a password by the link once, and signs in with it', async () => {
     const token = await make();
     const nobody = anonymousClient(app);
     await nobody.post('/password-resets/use', { token, password: 'four quiet lamps aboard' }).expect(204);
