@@ -145,7 +145,7 @@ export function PrintForm({ vesselId, roles, networks }: PrintFormProps) {
             {forCrew ? 'Nobody is on the crew list yet.' : 'Nobody is on a party’s list yet.'}
           </p>
         ) : (
-          <fieldset className="grid min-w-0 sm:grid-cols-2">
+          <fieldset className="grid min-w-0 grid-cols-1 sm:grid-cols-2">
             <legend className="text-sm font-medium">
               {chosen.length} of {people.length}
             </legend>
