@@ -7,7 +7,7 @@ import { AppError } from '../errors.ts';
 import { faultPoint } from '../faultPoint.ts';
 import { appendLog, type LogEvent } from '../handovers/appendLog.ts';
 import { bitsOfWords, type Generated, generate, wordsForBits } from '../passphrases/generate.ts';
-import { findReused, sealPassphrases } from '../passphrases/sealPassphrase.ts';
+import { findReused, type NumberedPassphrase, sealPassphrases } from '../passphrases/sealPassphrase.ts';
 import type { Services } from '../services.ts';
 import type { By } from './by.ts';
 
@@ -60,41 +60,42 @@ export async function stageAll(
   );
   const made = await makePassphrases(services, tx, rows, options.make ?? ((words) => generate({ words })));
   faultPoint('S2');
-  await sealPassphrases(
-    services,
-    tx,
-    made.map(({ row, id, vesselId, passphrase, bits, fingerprint }) => ({
-      id,
-      vesselId,
-      networkId: row.network_id,
-      passphrase,
-      fingerprint,
-      bits,
-      origin: 'generated',
-      generation: row.last_generation + 1,
-      now: by.now,
-    })),
-  );
   const staged = made.map(({ row, id }) => stagedRow(row, id, by.now));
-  await storeStaged(services, tx, staged, by.now);
-  await appendLog(
-    services,
-    tx,
-    staged.map(
-      (one): LogEvent => ({
-        vesselId: one.vessel_id,
-        kind: 'rotation.staged',
-        at: by.now,
-        networkId: one.network_id,
-        passphraseId: one.to_id,
-        subject: { kind: 'rotation', id: one.id },
-        actor: by.actor,
-        body: { driver: one.driver, mode: one.mode, epoch: one.epoch, ticket: one.ticket, dueAt: one.due_at },
-      }),
-    ),
-  );
+  // Sent one behind the other: while the database does one, the next is written down. The first that fails ends all.
+  await Promise.all([
+    sealPassphrases(services, tx, made.map(numbered(by.now))),
+    storeStaged(services, tx, staged, by.now),
+    appendLog(services, tx, staged.map(stagedEvent(by))),
+  ]);
   faultPoint('S3');
 }
+
+const numbered =
+  (now: Date) =>
+  ({ row, id, vesselId, passphrase, fingerprint, bits }: Made): NumberedPassphrase => ({
+    id,
+    vesselId,
+    networkId: row.network_id,
+    passphrase,
+    fingerprint,
+    bits,
+    origin: 'generated',
+    generation: row.last_generation + 1,
+    now,
+  });
+
+const stagedEvent =
+  ({ now, actor }: By) =>
+  (one: StagedRow): LogEvent => ({
+    vesselId: one.vessel_id,
+    kind: 'rotation.staged',
+    at: now,
+    networkId: one.network_id,
+    passphraseId: one.to_id,
+    subject: { kind: 'rotation', id: one.id },
+    actor,
+    body: { driver: one.driver, mode: one.mode, epoch: one.epoch, ticket: one.ticket, dueAt: one.due_at },
+  });
 
 /** Words that give at least the policy's bits. */
 function wordsOf({ words, least_bits }: StageRow): number {
@@ -135,6 +136,8 @@ async function makePassphrases(
   }
   throw new AppError('internal', 'No new passphrase could be made: every one drawn was used before.');
 }
+
+type StagedRow = ReturnType<typeof stagedRow>;
 
 function stagedRow(row: StageRow, toId: string, now: Date) {
   const ticket = { epoch: row.epoch, number: Number(row.last_ticket) + 1 };
@@ -177,7 +180,7 @@ function stagedRow(row: StageRow, toId: string, now: Date) {
 async function storeStaged(
   services: Services,
   tx: Tx,
-  staged: readonly ReturnType<typeof stagedRow>[],
+  staged: readonly StagedRow[],
   now: Date,
 ): Promise<void> {
   const { db } = services;

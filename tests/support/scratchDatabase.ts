@@ -30,6 +30,13 @@ export async function scratchDatabase(name: string): Promise<ScratchDatabase> {
   return {
     ownerUrl: inOwn(owner),
     appUrl: inOwn(app),
-    drop: () => asOwner(`DROP DATABASE IF EXISTS ${own} WITH (FORCE)`),
+    drop: async () => {
+      // Without FORCE it sends the server's own cleaners away, with FORCE connections that a dead process left.
+      try {
+        await asOwner(`DROP DATABASE IF EXISTS ${own}`);
+      } catch {
+        await asOwner(`DROP DATABASE IF EXISTS ${own} WITH (FORCE)`);
+      }
+    },
   };
 }
