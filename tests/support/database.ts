@@ -43,7 +43,12 @@ export function testDatabase(): TestDatabase {
   });
   afterAll(async () => {
     await asOwner(async (client) => {
-      await client.query(`DROP DATABASE IF EXISTS ${database.name} WITH (FORCE)`);
+      // WITH (FORCE) would also try to end the superuser's vacuum, which only a plain DROP may do.
+      await client.query(
+        "SELECT pg_terminate_backend(pid) FROM pg_stat_activity WHERE datname = $1 AND backend_type = 'client backend'",
+        [database.name],
+      );
+      await client.query(`DROP DATABASE IF EXISTS ${database.name}`);
     });
   });
   return database;

@@ -42,7 +42,7 @@ beforeAll(async () => {
 });
 afterAll(async () => {
   await held.restored?.close();
-  await asOwner('postgres', `DROP DATABASE IF EXISTS ${name} WITH (FORCE)`);
+  await asOwner('postgres', `DROP DATABASE IF EXISTS ${name}`);
   await rm(held.folder, { recursive: true, force: true });
 });
 

@@ -50,7 +50,7 @@ test('refuses production, then lays the fleet and keeps the sign-ins for this us
 
   expect((await seed()).stdout).toBe('');
   expect(await readFile(file, 'utf8')).toBe(first);
-});
+}, 90_000);
 
 test('names every setting that is missing', async () => {
   await expect(seed({ VAULT_KEYS: '' })).rejects.toMatchObject({
