@@ -1,6 +1,6 @@
 import { randomUUID } from 'node:crypto';
 import type { RotationState } from '../../shared/api/common.ts';
-import { type Plan, planNext } from '../../shared/rules/planning.ts';
+import { exposedSince, type Plan, planNext } from '../../shared/rules/planning.ts';
 import { OPEN_STATES } from '../../shared/rules/rotation.ts';
 import type { Tx } from '../db/connection.ts';
 import { appendLog } from '../handovers/appendLog.ts';
@@ -21,6 +21,8 @@ interface OpenRow {
   planned_by: 'plan' | 'person';
   due_at: Date;
   takes_over: boolean;
+  /** When it was last planned or moved. */
+  updated_at: Date;
 }
 
 /**
@@ -45,7 +47,7 @@ export async function replanNetwork(
   await db.run(tx, 'SELECT 1 FROM networks WHERE id = $network FOR UPDATE', { network: networkId });
   const open = await db.row<OpenRow>(
     tx,
-    `SELECT id, state, planned_by, due_at, takes_over FROM rotations WHERE network_id = $network AND state = ANY($open) FOR UPDATE`,
+    `SELECT id, state, planned_by, due_at, takes_over, updated_at FROM rotations WHERE network_id = $network AND state = ANY($open) FOR UPDATE`,
     { network: networkId, open: [...OPEN_STATES] },
   );
   if (open && (open.takes_over || (open.state !== 'planned' && open.state !== 'staged'))) return null;
@@ -96,24 +98,19 @@ async function adjust(
   plan: Plan,
   now: Date,
 ): Promise<Replanned> {
-  const exposed = plan.reasons.some(({ code }) =>
-    ['departed_guest', 'sign_off', 'lost_card', 'leak'].includes(code),
-  );
+  // What somebody decided stands until something new exposes the network.
+  const since = open.planned_by === 'person' ? open.updated_at : new Date(0);
+  const exposed = exposedSince(facts.input, since);
   const earlier = plan.dueAt.getTime() < open.due_at.getTime();
   const held = open.state === 'staged' || open.planned_by === 'person';
   const passed = open.due_at.getTime() <= now.getTime();
   const moves = earlier ? exposed || !held : !held && !exposed && !passed;
   if (!moves || plan.dueAt.getTime() === open.due_at.getTime()) {
     // The same time, but perhaps another limit.
-    await services.db.run(
-      tx,
-      'UPDATE rotations SET deadline_at = $deadline, updated_at = $now WHERE id = $id',
-      {
-        id: open.id,
-        deadline: plan.deadlineAt,
-        now,
-      },
-    );
+    await services.db.run(tx, 'UPDATE rotations SET deadline_at = $deadline WHERE id = $id', {
+      id: open.id,
+      deadline: plan.deadlineAt,
+    });
     return { rotationId: open.id, dueAt: open.due_at, changed: false };
   }
   await services.db.run(

@@ -73,7 +73,7 @@ interface Candidate {
 
 /**
  * When a network's passphrase changes next, and why. Guest: an hour after the party leaves, before the next
- * arrives. Crew: the next quiet hour after a sign-off, not around an arrival. Owner: not during an owner's
+ * arrives, and not while another party is aboard. Crew: the next quiet hour after a sign-off, not around an arrival. Owner: not during an owner's
  * trip. A network with equipment: not during a crossing. All of them before the age limit, in its last quiet
  * hour; where that cannot be, the first one after, with the delay among the reasons. Common practice, no
  * source; local times by RFC 5545 section 3.3.5.
@@ -89,10 +89,14 @@ export function planNext(input: PlanInput): Plan {
   const floor = putOffFrom ? later(now, new Date(putOffFrom.getTime() + PUT_OFF_MS)) : now;
   const blocked = blockedSpans(input);
 
+  const departure = afterDeparture(input, blocked, floor);
   const candidates = [
     exposure ? afterExposure(input, exposure, blocked, floor) : null,
-    afterDeparture(input, blocked, floor),
-    beforeAgeLimit(input, ageReachedAt, blocked, floor),
+    departure,
+    // A departure within the limit answers the limit too, at the better moment.
+    departure && departure.at.getTime() <= ageReachedAt.getTime()
+      ? null
+      : beforeAgeLimit(input, ageReachedAt, blocked, floor),
   ].filter((candidate) => candidate !== null);
   const chosen = candidates.reduce((best, next) => (next.at.getTime() < best.at.getTime() ? next : best));
   return {
@@ -118,6 +122,11 @@ function movesUp(policy: PlanInput['policy'], kind: Exposure['kind']): boolean {
     case 'leak':
       return policy.onLeak;
   }
+}
+
+/** Whether something that the policy answers exposed the passphrase in force at or after an instant. */
+export function exposedSince({ exposures, policy }: PlanInput, since: Date): boolean {
+  return exposures.some(({ kind, at }) => movesUp(policy, kind) && at.getTime() >= since.getTime());
 }
 
 function firstExposure({ exposures, policy }: PlanInput): Exposure | null {
@@ -186,10 +195,18 @@ function afterExposure(
   return { ...moment, reason };
 }
 
+/** Whether a party that had come before this departure is still aboard once it has settled: its own departure counts. */
+const othersStay = ({ parties }: PlanInput, left: Date, at: Date): boolean =>
+  parties.some(
+    (party) => party.arrivesAt.getTime() < left.getTime() && leftAt(party).getTime() > at.getTime(),
+  );
+
 function afterDeparture(input: PlanInput, blocked: readonly Span[], floor: Date): Candidate | null {
   if (!input.policy.onPartyDeparture || input.network.audience !== 'guest') return null;
   const departures = input.parties
-    .map((party) => ({ left: leftAt(party), at: freeFrom(blocked, settled(input, leftAt(party))) }))
+    .map(leftAt)
+    .filter((left) => !othersStay(input, left, settled(input, left)))
+    .map((left) => ({ left, at: freeFrom(blocked, settled(input, left)) }))
     .filter(({ left, at }) => left.getTime() > input.liveAt.getTime() && at.getTime() >= floor.getTime())
     .map(({ left, at }) => ({
       at,

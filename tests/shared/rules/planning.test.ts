@@ -69,6 +69,24 @@ describe('guest network: in the gap between two parties (common practice, no sou
     );
   });
 
+  test('not while another party is aboard, however many come and go', () => {
+    const staying = {
+      arrivesAt: utc('2026-06-19T13:00:00'),
+      leavesAt: utc('2026-06-22T08:00:00'),
+      ashoreAt: null,
+    };
+    const plan = planNext(asked({ audience: 'guest', over: { parties: [party, staying] } }));
+    expect(plan.dueAt).toEqual(utc('2026-06-22T09:00:00'));
+    expect(plan.reasons[0]).toMatchObject({ code: 'party_departure' });
+  });
+
+  test('a departure shortly before the age limit is better than the night before it', () => {
+    const shortly = { ...party, leavesAt: utc('2026-07-01T08:00:00') };
+    const plan = planNext(asked({ audience: 'guest', over: { parties: [shortly] } }));
+    expect(plan.dueAt).toEqual(utc('2026-07-01T09:00:00'));
+    expect(plan.deadlineAt).toEqual(utc('2026-07-01T10:00:00'));
+  });
+
   test('a party marked ashore early moves it up; what is left of it is exposed', () => {
     const now = utc('2026-06-20T06:30:00');
     const early = { ...party, ashoreAt: utc('2026-06-20T06:00:00') };
