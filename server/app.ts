@@ -1,11 +1,10 @@
 import { existsSync } from 'node:fs';
 import { fileURLToPath } from 'node:url';
 import express, { type Express } from 'express';
-import { AppError, notFound } from './errors.ts';
-import type { Endpoint } from './http/endpoint.ts';
+import { notFound } from './errors.ts';
+import { dispatch } from './http/dispatch.ts';
 import { errorHandler } from './http/errorHandler.ts';
 import { health } from './http/health.ts';
-import { jsonBody } from './http/jsonBody.ts';
 import { openApiDocument } from './http/openapi.ts';
 import { requestLog } from './http/requestLog.ts';
 import { securityHeaders } from './http/securityHeaders.ts';
@@ -44,30 +43,8 @@ function api(services: Services): express.Router {
   router.get('/openapi.json', (_request, response) => {
     response.json(document);
   });
-  const methods = new Map<string, Set<string>>();
-  for (const one of endpoints) {
-    register(router, services, one);
-    methods.set(one.contract.path, (methods.get(one.contract.path) ?? new Set()).add(one.contract.method));
-  }
-  for (const [path, allowed] of methods) {
-    router.all(path, (request, response) => {
-      if (request.method === 'OPTIONS') {
-        response.setHeader('Allow', [...allowed].join(', '));
-        response.status(204).end();
-        return;
-      }
-      response.setHeader('Allow', [...allowed].join(', '));
-      throw new AppError('method', 'That cannot be done to this address.');
-    });
-  }
+  router.use(dispatch(services, endpoints));
   return router;
-}
-
-function register(router: express.Router, services: Services, { contract, serve }: Endpoint): void {
-  const method = contract.method.toLowerCase() as 'get' | 'post' | 'put' | 'patch' | 'delete';
-  const answer: express.RequestHandler = (request, response) => serve(services, request, response);
-  if (contract.method === 'GET') router.get(contract.path, answer);
-  else router[method](contract.path, jsonBody(contract), answer);
 }
 
 /** The built client: hashed assets for a year, the page itself never kept. */

@@ -27,14 +27,20 @@ export interface StartOptions {
   readonly ticks?: boolean;
 }
 
+/** How long a log line may wait for others to be written with, in milliseconds. */
+const LOG_WAITS_MS = 200;
+
+/** Lines to standard output, written behind the requests and many at a time; at the process's end all that wait. */
+function standardLog(): Logger {
+  return pino(
+    { base: null, redact: { paths: ['*.password', '*.passphrase', '*.token'], censor: '[hidden]' } },
+    pino.destination({ dest: 1, sync: false, minLength: 4096, periodicFlush: LOG_WAITS_MS }),
+  );
+}
+
 /** Connects, checks the keys, serves, and starts the scheduled work. */
 export async function startServer(config: Config, options: StartOptions): Promise<Running> {
-  const log =
-    options.log ??
-    pino({
-      base: null,
-      redact: { paths: ['*.password', '*.passphrase', '*.token'], censor: '[hidden]' },
-    });
+  const log = options.log ?? standardLog();
   const db = new Database(config.databaseUrl);
   const vault = new Vault(config.vaultKeys, config.fingerprintKey);
   let queue: Queue | null = null;

@@ -2,7 +2,7 @@ import { randomUUID } from 'node:crypto';
 import type { Request } from 'express';
 import type { AcceptInvitation, InvitationView } from '../../shared/api/auth.ts';
 import { type DealerRole, ROLE_NAMES, type VesselRole } from '../../shared/rules/permissions.ts';
-import { setScope, type Tx } from '../db/connection.ts';
+import type { Tx } from '../db/connection.ts';
 import { AppError, invalid } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
 import { lockLog } from '../handovers/lockLog.ts';
@@ -104,7 +104,7 @@ const gone = () =>
 async function open(services: Services, tx: Tx, token: string, lock: boolean): Promise<InvitationRow> {
   const { db, clock } = services;
   // The person is not signed in, so the vessel is looked up by the token alone.
-  await setScope(db.sequelize, tx, { kind: 'system' });
+  await db.setScope(tx, { kind: 'system' });
   const row = await db.row<InvitationRow>(
     tx,
     `SELECT i.id, i.email, i.vessel_id, v.name AS place, i.roles, i.invited_by, b.name AS inviter, i.expires_at, p.id AS person_id

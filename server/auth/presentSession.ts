@@ -2,7 +2,7 @@ import type { Request } from 'express';
 import { language } from '../../shared/api/common.ts';
 import type { SessionView } from '../../shared/api/session.ts';
 import type { VesselRole } from '../../shared/rules/permissions.ts';
-import { setScope, type Tx } from '../db/connection.ts';
+import type { Tx } from '../db/connection.ts';
 import { AppError } from '../errors.ts';
 import { type Actor, csrfToken, readSessionCookie } from '../http/session.ts';
 import type { Services } from '../services.ts';
@@ -18,7 +18,7 @@ export async function presentSession(
   if (!sessionId) throw new AppError('not_signed_in', 'Please sign in.');
   const now = services.clock.now();
   // Names of the person's own vessels, across vessels: the query itself is bound to the person.
-  await setScope(services.db.sequelize, tx, { kind: 'system' });
+  await services.db.setScope(tx, { kind: 'system' });
   const vessels = await services.db.rows<{ id: string; name: string; roles: VesselRole[]; asked: string[] }>(
     tx,
     `SELECT v.id, v.name, array_agg(m.role ORDER BY m.role) AS roles, v.second_factor_roles AS asked

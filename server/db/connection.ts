@@ -1,7 +1,9 @@
 import { AsyncLocalStorage } from 'node:async_hooks';
+import type { Socket } from 'node:net';
+import { availableParallelism } from 'node:os';
 import { type Client, Pool, type QueryConfig, type QueryResult } from 'pg';
-import { QueryTypes, Sequelize, Transaction } from 'sequelize';
-import { databaseError, statement, values } from './statement.ts';
+import { Sequelize, Transaction } from 'sequelize';
+import { databaseError, often, statement, values } from './statement.ts';
 
 export type Tx = Transaction;
 export type Row = Record<string, unknown>;
@@ -16,6 +18,16 @@ export type Scope =
   | { readonly kind: 'fleet'; readonly dealerId: string }
   | { readonly kind: 'system' }
   | { readonly kind: 'none' };
+
+const SCOPE =
+  often(`SELECT set_config('quayword.scope', $kind, true), set_config('quayword.vessel', $vessel, true),
+  set_config('quayword.dealer', $dealer, true)`);
+
+/**
+ * Connections of one server: with twice the cores and one, all of them have something to do while some wait, and more
+ * would only take turns (common practice; measured by `npm run bench -- api`).
+ */
+const POOL_MAX = Math.max(5, 2 * availableParallelism() + 1);
 
 export interface DatabaseOptions {
   readonly poolMax?: number;
@@ -47,7 +59,7 @@ export class Database {
     this.sequelize = new Sequelize(url, {
       dialect: 'postgres',
       logging: false,
-      pool: { max: options.poolMax ?? 10, min: 0, acquire: 3_000, idle: 10_000 },
+      pool: { max: options.poolMax ?? POOL_MAX, min: 0, acquire: 3_000, idle: 10_000 },
       dialectOptions: {
         application_name: 'quayword',
         statement_timeout: 30_000,
@@ -100,9 +112,10 @@ export class Database {
     let sound = false;
     try {
       // Goes out together with the first statement; that one fails too where this does.
+      together(client);
       const begun = send(client, { text: readOnly ? 'BEGIN READ ONLY' : 'BEGIN' });
       begun.catch(() => undefined);
-      await setScope(this.sequelize, tx, scope);
+      if (scope.kind !== 'none') await this.setScope(tx, scope);
       const result = await work(tx);
       await begun;
       tx.finished = 'commit';
@@ -118,6 +131,15 @@ export class Database {
       client.uuid = undefined;
       await giveBack(connections, client, sound);
     }
+  }
+
+  /** Sets or widens what the rest of a transaction may see. */
+  async setScope(tx: Tx, scope: Scope): Promise<void> {
+    await this.run(tx, SCOPE, {
+      kind: scope.kind === 'none' ? '' : scope.kind,
+      vessel: scope.kind === 'vessel' ? scope.vesselId : '',
+      dealer: scope.kind === 'fleet' ? scope.dealerId : '',
+    });
   }
 
   /** Rows of a select; `$name` in the text stands for a bound value. */
@@ -157,6 +179,13 @@ export class Database {
   }
 }
 
+/** What is sent from here to the end of this turn of the event loop leaves as one packet. */
+function together(client: Lent): void {
+  const { stream } = (client as unknown as { connection: { stream: Socket } }).connection;
+  stream.cork();
+  process.nextTick(() => stream.uncork());
+}
+
 async function send(client: Lent, query: QueryConfig): Promise<QueryResult> {
   try {
     return await client.query(query);
@@ -190,21 +219,4 @@ async function giveBack(
   };
   if (sound) pool.releaseConnection(client);
   else await pool.destroyConnection(client).catch(() => undefined);
-}
-
-export async function setScope(sequelize: Sequelize, tx: Tx, scope: Scope): Promise<void> {
-  if (scope.kind === 'none') return;
-  await sequelize.query(
-    `SELECT set_config('quayword.scope', $kind, true), set_config('quayword.vessel', $vessel, true),
-            set_config('quayword.dealer', $dealer, true)`,
-    {
-      bind: {
-        kind: scope.kind,
-        vessel: scope.kind === 'vessel' ? scope.vesselId : '',
-        dealer: scope.kind === 'fleet' ? scope.dealerId : '',
-      },
-      transaction: tx,
-      type: QueryTypes.SELECT,
-    },
-  );
 }

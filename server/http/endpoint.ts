@@ -248,7 +248,10 @@ function send(contract: AnyContract, response: Response, reply: Presented): void
   } else if (reply.json === undefined) {
     response.end();
   } else {
-    response.json(reply.json);
+    const text = JSON.stringify(reply.json);
+    response.setHeader('Content-Type', 'application/json; charset=utf-8');
+    response.setHeader('Content-Length', Buffer.byteLength(text));
+    response.end(text);
   }
   if (contract.secret) response.locals.secret = true;
 }

@@ -148,7 +148,7 @@ interface SessionRow {
   second_factor_roles: string[];
 }
 
-const SESSION = often(`WITH seen AS (
+export const SESSION = often(`WITH seen AS (
        SELECT s.public_id, s.person_id, s.last_seen_at, s.proved_at, s.second_factor_at,
               p.name, p.email, p.locale, p.totp_enrolled_at
        FROM sessions s JOIN people p ON p.id = s.person_id

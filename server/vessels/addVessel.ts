@@ -2,7 +2,7 @@ import { randomUUID } from 'node:crypto';
 import type { z } from 'zod';
 import type { newVesselBody } from '../../shared/api/vessels.ts';
 import { invite } from '../auth/invitations.ts';
-import { setScope, type Tx } from '../db/connection.ts';
+import type { Tx } from '../db/connection.ts';
 import { invalid } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
 import type { Actor } from '../http/session.ts';
@@ -21,7 +21,7 @@ export async function addVessel(
   const { services, tx, actor, now } = given;
   if (!isZone(body.zone)) throw invalid({ zone: ['Choose a zone of the IANA list, such as Europe/Zagreb'] });
   const vesselId = randomUUID();
-  await setScope(services.db.sequelize, tx, { kind: 'vessel', vesselId });
+  await services.db.setScope(tx, { kind: 'vessel', vesselId });
   await services.db.run(
     tx,
     `INSERT INTO vessels(id, dealer_id, name, kind, home_port, serial_prefix, created_at, updated_at)

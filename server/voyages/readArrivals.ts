@@ -22,7 +22,7 @@ interface HeadRow {
 type Dated<T> = { [K in keyof T]: Date extends T[K] ? Exclude<T[K], Date> | string : T[K] };
 
 // Read at every arrival on every tablet: one statement for all but the guests, one for them.
-const HEAD = often(`
+export const HEAD = often(`
 SELECT v.name, v.source,
   (SELECT z.zone FROM ship_zones z WHERE z.vessel_id = v.id
      ORDER BY z.from_at > $now, CASE WHEN z.from_at > $now THEN z.from_at - $now ELSE $now - z.from_at END LIMIT 1) AS zone,
