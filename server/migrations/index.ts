@@ -8,6 +8,7 @@ import { migration as takesOver } from './0006_takes_over.ts';
 import { migration as lastCheckpoint } from './0007_last_checkpoint.ts';
 import { migration as fencesOnce } from './0008_fences_once.ts';
 import { migration as leanRotations } from './0009_lean_rotations.ts';
+import { migration as askedAgain } from './0010_asked_again.ts';
 
 /** In the order in which they run. A migration that has run anywhere is never edited again. */
 export const migrations: readonly Migration[] = [
@@ -20,4 +21,5 @@ export const migrations: readonly Migration[] = [
   lastCheckpoint,
   fencesOnce,
   leanRotations,
+  askedAgain,
 ];

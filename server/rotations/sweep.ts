@@ -14,6 +14,9 @@ export const GUEST_LEAD_MS = 48 * 3_600_000;
 /** And any other change. Common practice, no source. */
 export const LEAD_MS = 24 * 3_600_000;
 
+/** A boat that has not finished is asked again after this long, in milliseconds: recovery is to take a minute (R52). */
+const ASK_AGAIN_MS = 30_000;
+
 const STAGE_BATCH = 500;
 const STEP_BATCH = 50;
 
@@ -27,7 +30,7 @@ export interface Swept {
 
 /**
  * One look of the clock at everything: plans what has no plan, stages what is near, hands out what is due,
- * and marks what did not report as not known. Each batch is claimed by one statement with SKIP LOCKED and done
+ * marks what did not report as not known, and asks boats again that have not finished. Each batch is claimed by one statement with SKIP LOCKED and done
  * in the transaction that claimed it, so two servers share the work and a killed one leaves it as it was.
  */
 export async function sweep(services: Services): Promise<Swept> {
@@ -38,6 +41,8 @@ export async function sweep(services: Services): Promise<Swept> {
   const hold = gap > LONG_GAP_MS && (await countDue(services)) > MASS;
   const due = await inBatches(services, (each, tx, by) => handOutBatch(each, tx, by, hold));
   const unknown = await inBatches(services, reportBatch);
+  const unheard = new Date(services.clock.now().getTime() - ASK_AGAIN_MS);
+  await inBatches(services, (each, tx, by) => askAgainBatch(each, tx, by, unheard));
   return { planned, staged, handedOut: hold ? 0 : due, held: hold ? due : 0, unknown };
 }
 
@@ -188,14 +193,34 @@ async function countDue(services: Services): Promise<number> {
   return Number(row?.due ?? 0);
 }
 
-/** After a start: boats that were in the middle when this server stopped are asked again. Repeats do no harm. */
+/**
+ * Claims changes that a boat was asked to carry out before an instant and asks again: the server that had the
+ * order may have been paused or cut off with it in hand. Repeats do no harm; a claim that another server holds is
+ * passed over.
+ */
+async function askAgainBatch(services: Services, tx: Tx, by: By, before: Date): Promise<Batch> {
+  const claimed = await services.db.rows<{ id: string }>(
+    tx,
+    `SELECT r.id FROM rotations r JOIN networks n ON n.id = r.network_id JOIN log_heads h ON h.vessel_id = r.vessel_id
+     WHERE r.state IN ('handed_out','applying') AND r.driver = 'rehearsal' AND coalesce(r.asked_at, r.handed_out_at) < $before
+     ORDER BY r.report_by LIMIT $batch FOR UPDATE OF r, n, h SKIP LOCKED`,
+    { before, batch: STEP_BATCH },
+  );
+  for (const { id } of claimed) await enqueueCarryOut(services, tx, await readClaimed(services, tx, id));
+  await services.db.run(
+    tx,
+    'UPDATE rotations SET asked_at = greatest($now::timestamptz, $before::timestamptz) WHERE id = ANY($ids::uuid[])',
+    {
+      now: by.now,
+      before,
+      ids: claimed.map(({ id }) => id),
+    },
+  );
+  return { done: claimed.length, more: claimed.length === STEP_BATCH };
+}
+
+/** After a start: boats that were in the middle when this server stopped are asked again at once. */
 export async function resumeDeliveries(services: Services): Promise<number> {
-  return services.db.transaction({ kind: 'system' }, async (tx) => {
-    const claimed = await services.db.rows<{ id: string }>(
-      tx,
-      `SELECT id FROM rotations WHERE state IN ('handed_out','applying') AND driver = 'rehearsal' FOR UPDATE SKIP LOCKED`,
-    );
-    for (const { id } of claimed) await enqueueCarryOut(services, tx, await readClaimed(services, tx, id));
-    return claimed.length;
-  });
+  const started = services.clock.now();
+  return inBatches(services, (each, tx, by) => askAgainBatch(each, tx, by, started));
 }
