@@ -41,7 +41,7 @@ function standardLog(): Logger {
 /** Connects, checks the keys, serves, and starts the scheduled work. */
 export async function startServer(config: Config, options: StartOptions): Promise<Running> {
   const log = options.log ?? standardLog();
-  const db = new Database(config.databaseUrl);
+  const db = new Database(config.databaseUrl, { idleMs: config.transactionIdleMs });
   const vault = new Vault(config.vaultKeys, config.fingerprintKey);
   let queue: Queue | null = null;
   try {

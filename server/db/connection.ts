@@ -31,6 +31,8 @@ const POOL_MAX = Math.max(5, 2 * availableParallelism() + 1);
 
 export interface DatabaseOptions {
   readonly poolMax?: number;
+  /** The database ends a transaction that says nothing for this long and takes it back, in milliseconds; 30,000 unless set. */
+  readonly idleMs?: number;
   /** Throws where a transaction is opened inside another, which with a small pool waits for itself. For tests. */
   readonly refuseNested?: boolean;
 }
@@ -63,7 +65,7 @@ export class Database {
       dialectOptions: {
         application_name: 'quayword',
         statement_timeout: 30_000,
-        idle_in_transaction_session_timeout: 30_000,
+        idle_in_transaction_session_timeout: options.idleMs ?? 30_000,
         // Rows looked for by key lie in memory or on flash: reading them one by one beats reading a table.
         options: '-c random_page_cost=1.1 -c jit=off',
       },

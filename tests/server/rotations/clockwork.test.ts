@@ -98,6 +98,32 @@ describe('the rehearsal goes through the same machine', () => {
     ).toHaveLength(2);
   });
 
+  test('an order that is in the hands of a server that stopped is given again within a minute (R52)', async () => {
+    const boat = await rehearsalBoat();
+    const captain = await boat.asCaptain();
+    const { body } = await captain
+      .post(`/vessels/${boat.vesselId}/networks/${boat.network.id}/rotations/now`)
+      .expect(201);
+    const orders = () =>
+      rows<{ data: unknown }>(
+        "SELECT data FROM pgboss.job WHERE name = 'rehearsal.carryOut' AND data->>'rotationId' = $id",
+        { id: body.id },
+      );
+    const order = await orderOf(body.id);
+    expect(await orders()).toEqual([{ data: order }]);
+    app.clock.advance(20_000);
+    await sweep(app.services);
+    expect(await orders()).toHaveLength(1);
+    app.clock.advance(20_000);
+    await Promise.all([sweep(app.services), sweep(app.services)]);
+    expect(await orders()).toEqual([{ data: order }, { data: order }]);
+    for (const _ of await orders()) await carryOut(app.services, order);
+    expect(await stateOf(body.id)).toBe('live');
+    app.clock.advance(60_000);
+    await sweep(app.services);
+    expect(await orders()).toHaveLength(2);
+  });
+
   test("an older ticket's order is put aside after a newer one (I4)", async () => {
     const boat = await rehearsalBoat();
     const captain = await boat.asCaptain();
