@@ -1,5 +1,6 @@
 import { schedule } from 'node-cron';
 import { sweepAccounts } from '../auth/sweepAccounts.ts';
+import { hearRehearsals } from '../delivery/hear.ts';
 import { checkpointLogs } from '../handovers/checkpoint.ts';
 import { mailTransport, sweepMail } from '../mail/sendMail.ts';
 import { purgeRetired } from '../rotations/purge.ts';
@@ -12,6 +13,7 @@ import { eraseGuests } from '../voyages/eraseGuests.ts';
 const TICKS: Record<string, { cron: string; run: (services: Services) => Promise<unknown> }> = {
   rotations: { cron: '*/15 * * * * *', run: sweep },
   mail: { cron: '*/30 * * * * *', run: (services) => sweepMail(services, mailTransport(services)) },
+  boats: { cron: '40 * * * * *', run: hearRehearsals },
   visits: { cron: '20 * * * * *', run: endVisits },
   checkpoints: { cron: '3 * * * *', run: (services) => checkpointLogs(services) },
   disclosures: { cron: '5,20,35,50 * * * * *', run: (services) => checkpointLogs(services, 'disclosing') },
