@@ -5,6 +5,7 @@ import { type DealerRole, ROLE_NAMES, type VesselRole } from '../../shared/rules
 import type { Tx } from '../db/connection.ts';
 import { AppError, invalid } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
+import { markBack } from '../handovers/holders.ts';
 import { lockLog } from '../handovers/lockLog.ts';
 import { newToken, sha256 } from '../http/session.ts';
 import { queueMail } from '../mail/queueMail.ts';
@@ -201,6 +202,7 @@ export async function acceptInvitation(
       { id: randomUUID(), person: personId, vessel: row.vessel_id, role, by: row.invited_by, now },
     );
   }
+  await markBack(services, tx, { vesselId: row.vessel_id, kind: 'person', ids: [personId] });
   await db.run(tx, 'UPDATE invitations SET accepted_at = $now WHERE id = $id', { now, id: row.id });
   await appendLog(services, tx, [
     {

@@ -4,8 +4,10 @@ import { ROLE_NAMES, type VesselRole } from '../../shared/rules/permissions.ts';
 import type { Tx } from '../db/connection.ts';
 import { AppError, notFound } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
+import { markDeparted } from '../handovers/holders.ts';
 import { lockLog } from '../handovers/lockLog.ts';
 import { queueMail } from '../mail/queueMail.ts';
+import { replanNetwork } from '../rotations/replan.ts';
 import type { Services } from '../services.ts';
 
 /** Who has which role on the vessel now, by name. */
@@ -168,6 +170,7 @@ export async function setRoles(services: Services, tx: Tx, given: RoleChange): P
     actor: given.by,
     subject: { kind: 'person', id: given.personId, name: person?.name },
   } as const;
+  if (wanted.length === 0) await leaveVessel(services, tx, given.personId, given.vesselId);
   const suspension = given.suspended !== wasSuspended && wanted.length > 0;
   const [entry] = await appendLog(services, tx, [
     ...(added.length > 0
@@ -229,6 +232,16 @@ async function voidInvitationsBy(
 }
 
 /**
+ * Somebody without a role any more has left the vessel as far as their account goes: what they hold through it is
+ * exposed, and those networks are planned anew. Through their entry on the crew list they stay until they sign off.
+ */
+async function leaveVessel(services: Services, tx: Tx, personId: string, vesselId: string): Promise<void> {
+  const now = services.clock.now();
+  const networks = await markDeparted(services, tx, { vesselId, kind: 'person', ids: [personId] }, now);
+  for (const networkId of networks) await replanNetwork(services, tx, networkId, now);
+}
+
+/**
  * Ends every role of somebody who signs off, at once, and voids what they had invited, with its line in the log.
  * Throws `not_now` for the vessel's last captain. Does nothing for somebody without a role.
  */
@@ -265,4 +278,5 @@ export async function endRoles(
       body: { roles: ended.map(({ role }) => role).join(',') },
     },
   ]);
+  await leaveVessel(services, tx, given.personId, given.vesselId);
 }

@@ -190,6 +190,8 @@ export async function signOff(
     'UPDATE crew_members SET signed_off_at = $now, updated_at = $now WHERE id = $id AND vessel_id = $vessel',
     { now, id, vessel: vesselId },
   );
+  // Before the roles end, so that the networks told of are all they knew, also through their account.
+  const networkIds = await markDeparted(services, tx, { vesselId, kind: 'crew', ids: [id] }, now);
   if (member.person_id)
     await endRoles(services, tx, {
       personId: member.person_id,
@@ -197,7 +199,6 @@ export async function signOff(
       by: { id: change.actor.personId, name: change.actor.name },
     });
   await log(change, 'crew.signed_off', member);
-  const networkIds = await markDeparted(services, tx, { vesselId, kind: 'crew', ids: [id] }, now);
   for (const networkId of networkIds) await replanNetwork(services, tx, networkId, now);
   const exposed = await services.db.rows<{ ssid: string; due_at: Date | null }>(
     tx,

@@ -5,6 +5,7 @@ import type { Audience } from '../../shared/rules/permissions.ts';
 import { AppError, invalid, notFound } from '../errors.ts';
 import { appendLog, type LogEvent } from '../handovers/appendLog.ts';
 import { lockLog } from '../handovers/lockLog.ts';
+import { refuseInNote } from '../passphrases/refuseInNote.ts';
 import { voidCards } from '../rotations/comeIntoForce.ts';
 import { lockNetwork } from '../rotations/lockRotation.ts';
 import { replanNetwork } from '../rotations/replan.ts';
@@ -161,6 +162,7 @@ export async function changeNetwork(
     { network: networkId, vessel: vesselId },
   );
   if (!before) throw notFound();
+  await refuseInNote(services, tx, networkId, body.note);
   await refuseSameName(change, body.ssid, networkId);
   const renamed = before.ssid !== body.ssid;
   if (renamed || before.security !== body.security || before.audience !== body.audience)

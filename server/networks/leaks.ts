@@ -1,5 +1,6 @@
 import { randomUUID } from 'node:crypto';
 import { AppError, notFound } from '../errors.ts';
+import { refuseInNote } from '../passphrases/refuseInNote.ts';
 import { lockNetwork } from '../rotations/lockRotation.ts';
 import { replanNetwork } from '../rotations/replan.ts';
 import type { Change } from '../vessels/change.ts';
@@ -9,6 +10,7 @@ import { log } from './changeNetworks.ts';
 export async function reportLeak(change: Change, networkId: string, note: string | undefined): Promise<void> {
   const { services, tx, vesselId, actor, now } = change;
   await lockNetwork(services, tx, vesselId, networkId);
+  await refuseInNote(services, tx, networkId, note);
   const live = await services.db.row<{ id: string }>(
     tx,
     'SELECT id FROM passphrases WHERE network_id = $network AND vessel_id = $vessel AND live_at IS NOT NULL AND retired_at IS NULL',

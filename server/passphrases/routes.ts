@@ -26,7 +26,8 @@ export const passphraseRoutes = [
       judge(services, params.vesselId, params.networkId, body.passphrase),
     handle: async (context) => {
       const { services, tx, actor, params, now, prepared } = context;
-      await typeIn(askedOf(context), context.body.passphrase, prepared);
+      const { passphrase, since } = context.body;
+      await typeIn(askedOf(context), { passphrase, since: since ? new Date(since) : null }, prepared);
       return {
         network: await readNetwork(
           services,

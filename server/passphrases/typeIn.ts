@@ -86,10 +86,20 @@ export async function judge(
 
 /**
  * Writes down the passphrase that is in force already. A weak one is taken, because it is the truth, and flagged.
- * Whoever typed it in holds it.
+ * Whoever typed it in holds it. Its age counts from `since` where that is known, else from now.
  */
-export async function typeIn(asked: Asked, passphrase: string, judged: Judged): Promise<void> {
+export async function typeIn(
+  asked: Asked,
+  given: { readonly passphrase: string; readonly since: Date | null },
+  judged: Judged,
+): Promise<void> {
   const { services, tx, actor, vesselId, networkId, now } = asked;
+  const { passphrase, since } = given;
+  if (since && since.getTime() > now.getTime()) {
+    throw invalid({
+      since: ['That is still to come. Give the day since which it is in force, or leave it empty'],
+    });
+  }
   await lockNetwork(services, tx, vesselId, networkId);
   await refuseSame(asked, passphrase);
   const passphraseId = await sealPassphrase(services, tx, {
@@ -104,7 +114,7 @@ export async function typeIn(asked: Asked, passphrase: string, judged: Judged): 
   await appendLog(services, tx, [
     { vesselId, kind: 'passphrase.typed', at: now, networkId, passphraseId, actor: by.actor },
   ]);
-  await comeIntoForceByHand(services, tx, { vesselId, networkId, passphraseId }, by);
+  await comeIntoForceByHand(services, tx, { vesselId, networkId, passphraseId, since: since ?? now }, by);
   const holder = await holderOf(services, tx, vesselId, actor.personId);
   await recordHandover(services, tx, {
     vesselId,

@@ -2,6 +2,7 @@ import type { RotationView } from '../../shared/api/rotations.ts';
 import { AppError, notFound } from '../errors.ts';
 import { appendLog } from '../handovers/appendLog.ts';
 import type { Verb } from '../http/verb.ts';
+import { refuseInNote } from '../passphrases/refuseInNote.ts';
 import { byActor } from './by.ts';
 import { requireTypedBack } from './confirmAccessPoint.ts';
 import { handOutToBoat } from './handOut.ts';
@@ -21,6 +22,7 @@ export async function reportUnreachable(
   const by = byActor(context);
   const known = await lockRotation(services, tx, actor.vesselId ?? '', rotationId);
   const name = await targetName(context, known, accessPointId);
+  await refuseInNote(services, tx, known.networkId, note);
   const { ticket } = known.rotation;
   if (ticket === null) throw new AppError('not_now', 'This change has not started yet.');
   const reporter = await personReporter(services, tx, known, actor.personId);

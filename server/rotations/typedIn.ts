@@ -17,7 +17,7 @@ import { replanNetwork } from './replan.ts';
 export async function comeIntoForceByHand(
   services: Services,
   tx: Tx,
-  given: { vesselId: string; networkId: string; passphraseId: string },
+  given: { vesselId: string; networkId: string; passphraseId: string; since: Date },
   by: By,
 ): Promise<void> {
   const { db } = services;
@@ -53,8 +53,8 @@ export async function comeIntoForceByHand(
   );
   await db.run(
     tx,
-    'UPDATE passphrases SET live_at = $now WHERE id = $id AND vessel_id = $vessel AND network_id = $network',
-    bind,
+    'UPDATE passphrases SET live_at = $since WHERE id = $id AND vessel_id = $vessel AND network_id = $network',
+    { id: given.passphraseId, vessel: given.vesselId, network: given.networkId, since: given.since },
   );
   const cards = await voidCards(
     services,

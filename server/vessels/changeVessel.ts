@@ -88,6 +88,10 @@ export async function addZone(change: Change, body: { zone: string; fromLocal: s
   if (zones.length >= ZONES_MAX)
     throw invalid({ zone: [`At most ${ZONES_MAX} changes of ship's time are kept; take old ones away`] });
   const fromAt = shipInstant(zones, localTime(body.fromLocal));
+  const first = zones[0];
+  if (first && fromAt.getTime() < first.fromAt.getTime()) {
+    throw invalid({ fromLocal: ['That is before the first time on record here. Choose a later date'] });
+  }
   if (zones.some((span) => span.fromAt.getTime() === fromAt.getTime())) {
     throw invalid({ fromLocal: ["Ship's time already changes at that moment. Take that change away first"] });
   }

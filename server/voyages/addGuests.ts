@@ -51,6 +51,9 @@ export async function importList(
   return { partyId, added: ids.length };
 }
 
+/** The longest a visit is taken for: 31 days, in milliseconds. Common practice, no source. */
+const VISIT_MAX_MS = 31 * 86_400_000;
+
 /** Adds somebody who is on no list. */
 export async function addVisitor(
   context: Verb,
@@ -65,6 +68,8 @@ export async function addVisitor(
   const { services, tx, now } = context;
   if (new Date(given.untilAt).getTime() <= now.getTime())
     throw invalid({ untilAt: ['Choose an end time that is still to come'] });
+  if (new Date(given.untilAt).getTime() > now.getTime() + VISIT_MAX_MS)
+    throw invalid({ untilAt: ['A visit ends within a month. For a longer stay add them to a party'] });
   await lockLog(services, tx, vesselOf(context));
   const [id = ''] = await writeGuests(context, {
     partyId: null,

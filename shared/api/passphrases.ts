@@ -45,7 +45,11 @@ export const typeIn = contract({
   fresh: true,
   secret: true,
   params: networkParams,
-  body: z.strictObject({ passphrase: typed }),
+  body: z.strictObject({
+    passphrase: typed,
+    /** Since when it is in force, where that is known; else its age counts from now. */
+    since: instant.nullable().default(null),
+  }),
   response: z.strictObject({ network: networkView, verdict: passphraseVerdict }),
   status: 201,
 });

@@ -135,7 +135,7 @@ export const changeSource = contract({
 });
 
 export const zoneBody = z.strictObject({
-  zone: z.string().min(1).max(64),
+  zone: z.string().min(1, 'Choose a zone from the list').max(64),
   /** Ship's local date and time in the zone before the change, such as 2026-06-20T02:00. */
   fromLocal: z.string().regex(/^\d{4}-\d{2}-\d{2}T\d{2}:\d{2}$/, 'Give a date and a time'),
 });

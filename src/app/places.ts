@@ -25,8 +25,11 @@ export function vesselPlaces(vesselId: string, roles: readonly VesselRole[]): Pl
     label,
     to: `${below}/${path}`,
   }));
-  const isCrewOnly = may(roles, 'crew.own') && !may(roles, 'networks.view');
-  return isCrewOnly ? [{ label: 'Crew Wi-Fi', to: `${below}/crew` }, ...places] : places;
+  // Whoever keeps the crew list finds their own code below it.
+  const hasOwnPage = may(roles, 'crew.own') && !may(roles, 'crew.view');
+  if (!hasOwnPage) return places;
+  const own = { label: 'Crew Wi-Fi', to: `${below}/crew` };
+  return may(roles, 'networks.view') ? [...places, own] : [own, ...places];
 }
 
 /** The pages of the dealer. */

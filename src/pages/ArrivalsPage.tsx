@@ -41,16 +41,19 @@ export function ArrivalsPage() {
 
 function Arrivals({ vesselId, arrivals }: { vesselId: string; arrivals: ArrivalsView }) {
   const [chosen, setChosen] = useState<string | null>(() => nextToServe(arrivals.guests, null)?.id ?? null);
+  const [byItself, setByItself] = useState(false);
   const [dialog, setDialog] = useState<'visitor' | 'guest' | 'print' | 'party' | null>(null);
   const [open, setOpen] = useState(false);
   const everybody = [...arrivals.guests, ...arrivals.visitors];
   const guest = everybody.find(({ id }) => id === chosen) ?? null;
   const select = (guestId: string) => {
     setChosen(guestId);
+    setByItself(false);
     setOpen(true);
   };
   const served = (guestId: string) => {
     const next = nextToServe(arrivals.guests, guestId);
+    setByItself(true);
     if (next) setChosen(next.id);
     else setOpen(false);
   };
@@ -148,15 +151,12 @@ function Arrivals({ vesselId, arrivals }: { vesselId: string; arrivals: Arrivals
               vesselId={vesselId}
               arrivals={arrivals}
               guest={guest}
+              byItself={byItself}
               onServed={served}
               onSelect={setChosen}
             />
           ) : (
-            <p className="text-soft">
-              {party && arrivals.guests.length > 0
-                ? 'Everybody has been served. Choose somebody for another card.'
-                : 'Choose somebody to hand a card to.'}
-            </p>
+            <p className="text-soft">Choose somebody to hand a card to.</p>
           )}
         </div>
       </aside>

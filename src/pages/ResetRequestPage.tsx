@@ -14,11 +14,14 @@ import { useTitle } from '../lib/useTitle.ts';
 /** `/reset` */
 export function ResetRequestPage() {
   const [email, setEmail] = useState('');
+  const [missing, setMissing] = useState<string | undefined>();
   const ask = useMutation({ mutationFn: askForReset });
   useTitle('New password');
   const submit = (event: FormEvent) => {
     event.preventDefault();
-    if (!ask.isPending) ask.mutate({ email });
+    const given = email.trim();
+    setMissing(given === '' ? 'Give the mail address you sign in with' : undefined);
+    if (given !== '' && !ask.isPending) ask.mutate({ email: given });
   };
   if (ask.isSuccess) {
     return (
@@ -47,7 +50,7 @@ export function ResetRequestPage() {
           required
           value={email}
           onChange={(event) => setEmail(event.target.value)}
-          error={fieldError(ask.error, 'email')}
+          error={missing ?? fieldError(ask.error, 'email')}
         />
         <FormError error={ask.error} />
         <Button type="submit" kind="primary" size="large" busy={ask.isPending && 'Sending…'}>

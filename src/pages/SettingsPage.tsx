@@ -142,7 +142,7 @@ const counted = (count: number, one: string, many: string) =>
 function SettingsSentence({ settings, roles }: { settings: VesselSettings; roles: readonly VesselRole[] }) {
   const { name, cabins, accessPoints } = settings;
   const yours = may(roles, 'vessel.edit')
-    ? 'All of it is yours to change.'
+    ? 'Below you change them, and who is aboard with which role.'
     : may(roles, 'networks.edit')
       ? "The access points and where she lies are yours to change, the rest is the captain's."
       : "Where she lies is yours to change, the rest is the captain's.";

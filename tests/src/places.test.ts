@@ -18,14 +18,21 @@ function session(memberships: { vesselId: string; roles: VesselRole[] }[], deale
 
 describe('the navigation', () => {
   test('follows the table of permissions', () => {
-    expect(labels('purser')).toEqual(['Arrivals', 'Networks', 'Cards', 'Log', 'Settings']);
+    expect(labels('purser')).toEqual(['Arrivals', 'Networks', 'Cards', 'Log', 'Settings', 'Crew Wi-Fi']);
     expect(labels('captain')).toEqual(['Arrivals', 'Networks', 'Crew', 'Cards', 'Log', 'Settings']);
-    expect(labels('eto')).toEqual(['Networks', 'Settings']);
+    expect(labels('eto')).toEqual(['Networks', 'Settings', 'Crew Wi-Fi']);
     expect(labels('crew')).toEqual(['Crew Wi-Fi']);
   });
 
   test('adds up where one person has several roles', () => {
-    expect(labels('eto', 'purser')).toEqual(['Arrivals', 'Networks', 'Cards', 'Log', 'Settings']);
+    expect(labels('eto', 'purser')).toEqual([
+      'Arrivals',
+      'Networks',
+      'Cards',
+      'Log',
+      'Settings',
+      'Crew Wi-Fi',
+    ]);
     expect(labels('crew', 'captain')).toEqual(labels('captain'));
   });
 });

@@ -1,5 +1,5 @@
 import { useMutation, useQueryClient } from '@tanstack/react-query';
-import { useCallback, useEffect, useState } from 'react';
+import { useCallback, useEffect, useRef, useState } from 'react';
 import type { ArrivalsView, GuestView } from '../../../shared/api/arrivals.ts';
 import type { CardLanguage } from '../../../shared/api/common.ts';
 import { CARD_LANGUAGES, CARD_MESSAGES } from '../../../shared/messages/card.ts';
@@ -24,17 +24,29 @@ interface HandOverPanelProps {
   vesselId: string;
   arrivals: ArrivalsView;
   guest: GuestView;
+  /** Chosen by itself after the one before was served, not by a tap. */
+  byItself: boolean;
   /** After a handover: the next guest is chosen. */
   onServed: (guestId: string) => void;
   /** After an undo: back to whom it was about. */
   onSelect: (guestId: string) => void;
 }
 
+/** Taps closer together than this are one, in milliseconds. */
+const SECOND_TAP_MS = 350;
+
 /** How long a code shown large stays before it hides itself, in seconds: enough for two phones. */
 const LARGE_SECONDS = 60;
 
 /** The guest chosen: their card, and the ways to give it to them. One press hands over; undo for ten seconds. */
-export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }: HandOverPanelProps) {
+export function HandOverPanel({
+  vesselId,
+  arrivals,
+  guest,
+  byItself,
+  onServed,
+  onSelect,
+}: HandOverPanelProps) {
   const client = useQueryClient();
   const { say, undoable } = useNotices();
   const [language, setLanguage] = useState<CardLanguage>(cardLanguageOf(guest.language));
@@ -50,6 +62,12 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
   const { hide: hidePeek } = peek;
   // biome-ignore lint/correctness/useExhaustiveDependencies: another language makes what is shown stale
   useEffect(() => hidePeek(), [language, hidePeek]);
+
+  // A second tap of the same thumb must not hand over to the guest who has just taken this one's place.
+  const shownAt = useRef(performance.now());
+  const handOverNow = () => {
+    if (!byItself || performance.now() - shownAt.current > SECOND_TAP_MS) give.mutate();
+  };
 
   const undo = useMutation({
     mutationFn: (handoverId: string) => undoHandover(vesselId, handoverId),
@@ -106,6 +124,7 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
   }
   const failed = give.error ?? print.error ?? (code.stage.kind === 'failed' ? code.stage.error : null);
   const nothing = !network.live && !network.staged;
+  const inHand = guest.printedCard !== null;
   return (
     <div className="flex h-full flex-col gap-4">
       <div>
@@ -160,17 +179,18 @@ export function HandOverPanel({ vesselId, arrivals, guest, onServed, onSelect }:
         {guest.ashoreAt ? null : (
           <>
             <Button
-              kind="primary"
+              kind={inHand ? 'primary' : 'secondary'}
               size="large"
               wide
-              disabled={nothing}
+              disabled={nothing || !inHand}
               busy={give.isPending && 'Writing it down…'}
-              onClick={() => give.mutate()}
+              onClick={handOverNow}
             >
-              {guest.handover ? 'Hand over another card' : 'Hand over printed card'}
+              {inHand || !guest.handover ? 'Hand over printed card' : 'No other card is printed'}
             </Button>
             <div className="grid grid-cols-2 gap-2.5">
               <Button
+                kind={inHand ? 'secondary' : 'primary'}
                 size="large"
                 disabled={nothing}
                 busy={code.stage.kind === 'fetching' && 'Fetching…'}

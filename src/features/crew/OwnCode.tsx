@@ -39,7 +39,7 @@ export function OwnCode({ vesselId, zone, network }: OwnCodeProps) {
           <p className="text-sm text-soft">
             {network.since ? (
               <>
-                Same passphrase since <DateTime at={network.since} zone={zone} />.
+                In force since <DateTime at={network.since} zone={zone} />.
               </>
             ) : (
               'No passphrase is on record yet.'
@@ -86,7 +86,7 @@ export function OwnCode({ vesselId, zone, network }: OwnCodeProps) {
             Show the code
           </Button>
           <p className="text-sm text-soft">
-            Reading it is written to the log. Pass it to nobody; who joins next gets a code of their own.{' '}
+            Reading it is written to the log. Pass it to nobody: whoever needs it asks the chief stew.{' '}
             {network.readAt ? (
               <>
                 You read this one <DateTime at={network.readAt} zone={zone} as="words" />.

@@ -55,6 +55,7 @@ export function NetworkPassphrase({ vesselId, network, zone }: NetworkPassphrase
       ) : null}
       {typing ? (
         <TypeInDialog
+          zone={zone}
           vesselId={vesselId}
           networkId={network.id}
           ssid={network.ssid}

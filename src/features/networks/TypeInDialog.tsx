@@ -9,12 +9,15 @@ import { useNotices } from '../../components/Notices.tsx';
 import { SafeText } from '../../components/SafeText.tsx';
 import { Attention } from '../../components/Sentence.tsx';
 import { fieldError, namesFields, sentenceFor } from '../../lib/errors.ts';
+import { fromLocal } from '../../lib/shipLocal.ts';
 import { checkTyped, typeIn, vesselKey } from './queries.ts';
 
 interface TypeInDialogProps {
   vesselId: string;
   networkId: string;
   ssid: string;
+  /** IANA name of the ship's zone. */
+  zone: string;
   onClose: () => void;
 }
 
@@ -24,14 +27,16 @@ const PAUSE_MS = 600;
  * Takes down the passphrase that is in force today, with what is to be said of it as it is typed. A weak one is
  * taken too, because it is the truth, and flagged.
  */
-export function TypeInDialog({ vesselId, networkId, ssid, onClose }: TypeInDialogProps) {
+export function TypeInDialog({ vesselId, networkId, ssid, zone, onClose }: TypeInDialogProps) {
   const client = useQueryClient();
   const { say } = useNotices();
   const [passphrase, setPassphrase] = useState('');
+  const [since, setSince] = useState('');
   const [wrong, setWrong] = useState<string | undefined>();
   const { verdict, judge, judging } = useVerdict(vesselId, networkId, passphrase);
   const save = useMutation({
-    mutationFn: () => typeIn(vesselId, networkId, passphrase),
+    mutationFn: () =>
+      typeIn(vesselId, networkId, { passphrase, since: since ? fromLocal(`${since}T00:00`, zone) : null }),
     onSuccess: async ({ verdict: judged }) => {
       await client.invalidateQueries({ queryKey: vesselKey(vesselId) });
       say(
@@ -61,7 +66,7 @@ export function TypeInDialog({ vesselId, networkId, ssid, onClose }: TypeInDialo
       keepOpen
     >
       <form onSubmit={submit} noValidate className="flex flex-col gap-4" autoComplete="off">
-        <p>Type in what the access points run today. This changes nothing aboard. Its age counts from now.</p>
+        <p>Type in what the access points run today. This changes nothing aboard.</p>
         <TextInput
           label="Passphrase"
           hint="8 to 63 characters, exactly as a phone would type it."
@@ -79,6 +84,14 @@ export function TypeInDialog({ vesselId, networkId, ssid, onClose }: TypeInDialo
           }}
           onBlur={judge}
           error={wrong ?? refused}
+        />
+        <TextInput
+          type="date"
+          label="In force since"
+          hint="As far as anybody knows, ship's time. Left empty, its age counts from today."
+          value={since}
+          onChange={(event) => setSince(event.target.value)}
+          error={fieldError(save.error, 'since')}
         />
         <div role="status" className="min-h-12 text-sm">
           {verdict ? <Verdict verdict={verdict} /> : judging ? <p className="text-soft">Judging…</p> : null}

@@ -58,9 +58,13 @@ export const reveal = (vesselId: string, networkId: string) =>
 export const checkTyped = (vesselId: string, networkId: string, passphrase: string) =>
   apiSend<PassphraseVerdict>('POST', `${below(vesselId, networkId)}/passphrase/check`, { passphrase });
 
-export const typeIn = (vesselId: string, networkId: string, passphrase: string) =>
+export const typeIn = (
+  vesselId: string,
+  networkId: string,
+  given: { passphrase: string; since: string | null },
+) =>
   apiSend<{ network: NetworkView; verdict: PassphraseVerdict }>(
     'POST',
     `${below(vesselId, networkId)}/passphrase`,
-    { passphrase },
+    given,
   );

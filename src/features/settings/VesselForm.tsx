@@ -82,7 +82,7 @@ export function VesselForm({ settings }: { settings: VesselSettings }) {
         {...box('ownerName')}
         maxLength={NAME_MAX}
         className="sm:col-span-2"
-        hint="May be left empty. Passphrases made of it are then recognised as weak, as those made of her name and home port are. It is shown nowhere else."
+        hint="May be left empty. Passphrases made of it are then recognised as weak, as those made of her name and home port are. It is shown on this page only."
       />
       <TextInput
         {...box('retentionDays')}

@@ -30,6 +30,22 @@ const log = (vesselId: string) =>
     },
   );
 
+describe('somebody whose roles have all ended', () => {
+  test('is a departed holder of what they looked up, and the network is exposed', async () => {
+    const { vesselId, stew, asCaptain, asStew } = await aboard();
+    const network = await make.network(vesselId, {
+      audience: 'guest',
+      live: 'harbour-lantern-mooring-compass',
+    });
+    await asStew.post(`/vessels/${vesselId}/networks/${network.id}/reveal`).expect(200);
+    await asCaptain
+      .put(`/vessels/${vesselId}/members/${stew.id}`, { roles: [], suspended: false })
+      .expect(204);
+    const shown = await asCaptain.get(`/vessels/${vesselId}/networks/${network.id}`).expect(200);
+    expect(shown.body).toMatchObject({ standing: 'exposed', holders: { current: 0, departed: 1 } });
+  });
+});
+
 describe('roles on a vessel', () => {
   test('are given and ended by the captain, each with its line in the log, and count with the next request (R9)', async () => {
     const { vesselId, stew, asCaptain, asStew } = await aboard();

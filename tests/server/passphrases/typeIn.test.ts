@@ -40,6 +40,29 @@ describe('typing in the passphrase in force', () => {
     expect(shown.body.codes[0].passphrase).toBe('Zb7#kQw0-vR2tYp9');
   });
 
+  test('its age counts from the day it is known to be in force, never from one to come', async () => {
+    const { vesselId, path } = await boat({ ageLimitDays: 14 });
+    const eto = await as(vesselId, 'eto');
+    const passphrase = 'Zb7#kQw0-vR2tYp9';
+    const ahead = { passphrase, since: ago(-1).toISOString() };
+    expect((await eto.post(`${path}/passphrase`, ahead).expect(422)).body.errors).toHaveProperty('since');
+    const typed = await eto
+      .post(`${path}/passphrase`, { passphrase, since: ago(40).toISOString() })
+      .expect(201);
+    expect(typed.body.network).toMatchObject({ standing: 'overdue', live: { ageDays: 40 } });
+  });
+
+  test('a note that holds a passphrase is refused, however it is spaced, and kept nowhere', async () => {
+    const { vesselId, path } = await boat({ live: 'maple-sextant-orbit-velvet-drum' });
+    const captain = await as(vesselId, 'captain');
+    for (const note of [
+      'It is maple-sextant-orbit-velvet-drum',
+      'somebody read MAPLE SEXTANT ORBIT VELVET DRUM aloud',
+    ])
+      expect((await captain.post(`${path}/leaks`, { note }).expect(422)).body.errors).toHaveProperty('note');
+    await captain.post(`${path}/leaks`, { note: 'Read out on deck' }).expect(201);
+  });
+
   test('a weak one is taken, because it is the truth, and flagged in words', async () => {
     const { vesselId, path } = await boat();
     const eto = await as(vesselId, 'eto');
