@@ -57,6 +57,11 @@ export function AgePlot({ dots }: { dots: readonly FleetDot[] }) {
   const doublings = Array.from({ length: Math.log2(axis.end) }, (_, index) => 2 ** (index + 1));
   const limitX = plotX(axis, 1);
   const narrow = width < 420;
+  const step = plotX(axis, 2) - limitX;
+  // Labels that would run into each other are left out; the end is always said.
+  const labelled = doublings.filter(
+    (times) => times === axis.end || (step >= 44 && (narrow || step >= 95 || times < axis.end / 2)),
+  );
   const pastLimit = dots.filter((dot) => dot.ratio > 1).length;
   return (
     <figure className="m-0 grid grid-cols-1 gap-x-6 sm:grid-cols-[7rem_1fr]">
@@ -94,52 +99,54 @@ export function AgePlot({ dots }: { dots: readonly FleetDot[] }) {
                 null,
               );
               return (
-                <div key={audience} className="relative border-b border-rule" style={{ height: ROW }}>
-                  <span className="absolute inset-y-0 left-0 bg-shoal" style={{ width: limitX }} />
-                  <span className="absolute top-1 left-1 sm:hidden">
+                <div key={audience}>
+                  <p className="py-1 text-sm sm:hidden">
                     <Flag audience={audience} />
-                  </span>
-                  <svg width={width} height={ROW} aria-hidden="true" className="absolute inset-0">
-                    {within.map(({ item, x, y }) => (
-                      <circle
+                  </p>
+                  <div className="relative border-b border-rule" style={{ height: ROW }}>
+                    <span className="absolute inset-y-0 left-0 bg-shoal" style={{ width: limitX }} />
+                    <svg width={width} height={ROW} aria-hidden="true" className="absolute inset-0">
+                      {within.map(({ item, x, y }) => (
+                        <circle
+                          key={item.networkId}
+                          cx={x}
+                          cy={ROW / 2 + y}
+                          r={RADIUS}
+                          className="fill-paper stroke-ink"
+                          strokeWidth={1}
+                        >
+                          <title>{dotWords(item)}</title>
+                        </circle>
+                      ))}
+                    </svg>
+                    {past.map(({ item, x, y }) => (
+                      <Link
                         key={item.networkId}
-                        cx={x}
-                        cy={ROW / 2 + y}
-                        r={RADIUS}
-                        className="fill-paper stroke-ink"
-                        strokeWidth={1}
+                        to={`/fleet/vessels/${item.vesselId}`}
+                        title={dotWords(item)}
+                        aria-label={dotWords(item)}
+                        className="absolute grid size-6 place-items-center rounded-full"
+                        style={{ left: x - 12, top: ROW / 2 + y - 12 }}
                       >
-                        <title>{dotWords(item)}</title>
-                      </circle>
+                        <span className="size-[11px] rounded-full bg-magenta" />
+                      </Link>
                     ))}
-                  </svg>
-                  {past.map(({ item, x, y }) => (
-                    <Link
-                      key={item.networkId}
-                      to={`/fleet/vessels/${item.vesselId}`}
-                      title={dotWords(item)}
-                      aria-label={dotWords(item)}
-                      className="absolute grid size-6 place-items-center rounded-full"
-                      style={{ left: x - 12, top: ROW / 2 + y - 12 }}
-                    >
-                      <span className="size-[11px] rounded-full bg-magenta" />
-                    </Link>
-                  ))}
-                  {worst ? (
-                    <span
-                      aria-hidden="true"
-                      className={cx(
-                        'pointer-events-none absolute text-xs whitespace-nowrap',
-                        worst.x > width * 0.8 && '-translate-x-full',
-                      )}
-                      style={{
-                        left: worst.x + (worst.x > width * 0.8 ? 6 : -6),
-                        top: ROW / 2 + worst.y - 25,
-                      }}
-                    >
-                      <SafeText>{worst.item.vesselName}</SafeText>, {ageLabel(worst.item.ageDays)}
-                    </span>
-                  ) : null}
+                    {worst && !narrow ? (
+                      <span
+                        aria-hidden="true"
+                        className={cx(
+                          'pointer-events-none absolute text-xs whitespace-nowrap',
+                          worst.x > width * 0.8 && '-translate-x-full',
+                        )}
+                        style={{
+                          left: worst.x + (worst.x > width * 0.8 ? 6 : -6),
+                          top: ROW / 2 + worst.y - 25,
+                        }}
+                      >
+                        <SafeText>{worst.item.vesselName}</SafeText>, {ageLabel(worst.item.ageDays)}
+                      </span>
+                    ) : null}
+                  </div>
                 </div>
               );
             })
@@ -163,7 +170,7 @@ export function AgePlot({ dots }: { dots: readonly FleetDot[] }) {
           <span className="absolute top-1.5 -translate-x-1/2" style={{ left: limitX }}>
             limit
           </span>
-          {doublings.map((times) => (
+          {labelled.map((times) => (
             <span
               key={times}
               className={cx(

@@ -90,7 +90,7 @@ export function wire(test: TestApp) {
   };
 }
 
-export type Wire = ReturnType<typeof wire>;
+type Wire = ReturnType<typeof wire>;
 
 /** A session cookie as the server makes it, with what a test wants different. */
 export function sessionCookie(test: TestApp, sessionId: string): string {
