@@ -90,8 +90,6 @@ export function wire(test: TestApp) {
   };
 }
 
-type Wire = ReturnType<typeof wire>;
-
 /** A session cookie as the server makes it, with what a test wants different. */
 export function sessionCookie(test: TestApp, sessionId: string): string {
   const { current, keys } = test.services.config.sessionKeys;
