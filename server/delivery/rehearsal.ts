@@ -13,7 +13,7 @@ import type { Services } from '../services.ts';
 const order = z.object({ rotationId: id, epoch: z.number().int(), ticket: z.number().int() });
 
 /**
- * Carries a change out on a pretended boat, through the same steps and the same rules as any other: its journal
+ * Carries a change out on a pretended boat, through the same steps and the same rules as every other: its journal
  * takes the order, its officer opens it, then access point by access point the passphrase is set and read
  * back. Silent access points never answer. Each step is its own transaction and looks at the state again
  * first, so a repeat, a twin or a crash in the middle changes nothing that was done.

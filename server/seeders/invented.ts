@@ -20,7 +20,7 @@ export const BERTHS: readonly Berth[] = [
   { port: 'Phuket', berth: 'H4', zone: 'Asia/Bangkok' },
   { port: 'Auckland', berth: 'V12', zone: 'Pacific/Auckland' },
   { port: 'Papeete', berth: '2', zone: 'Pacific/Tahiti' },
-  { port: 'Fort Lauderdale', berth: 'F18', zone: 'America/New_York' },
+  { port: 'Norfolk', berth: 'F18', zone: 'America/New_York' },
   { port: "St John's, Antigua", berth: '8', zone: 'America/Antigua' },
   { port: 'Nassau', berth: '40', zone: 'America/Nassau' },
   { port: 'Bergen', berth: 'south quay', zone: 'Europe/Oslo' },

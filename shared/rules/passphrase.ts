@@ -93,7 +93,7 @@ export function ssidCautions(ssid: string): string[] {
   return cautions;
 }
 
-/** The same for a passphrase that was typed in; what Quayword generates never has any. */
+/** The same for a passphrase that was typed in; what Quayword generates has none. */
 export function passphraseCautions(passphrase: string): string[] {
   const cautions = valueCautions(passphrase);
   if (/ {2}/.test(passphrase)) {
