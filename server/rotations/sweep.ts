@@ -123,7 +123,8 @@ async function handOutBatch(services: Services, tx: Tx, by: By, hold: boolean): 
     else await handOutToBoat(services, tx, known, by);
   }
   faultPoint('S6');
-  return { done: claimed.length, more: claimed.length === STEP_BATCH };
+  // One that was passed over was held for a moment only: it is looked for again while there is anything to do.
+  return { done: claimed.length, more: claimed.length > 0 };
 }
 
 const ENTER_IT = 'It is time: open the entry sheet and enter the new passphrase into each access point.';

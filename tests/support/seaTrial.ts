@@ -213,37 +213,47 @@ export async function judge(services: Services, ids: readonly string[]): Promise
   });
 }
 
-/**
- * One fault: a server ends itself at `point`, another takes over, and everything due has happened once. Also
- * judged in between, when nobody may be locked out either.
- */
+/** Several faults in a row on the same changes: each server takes over and ends itself at its own step, the last goes on. */
+export async function tryFaults(
+  services: Services,
+  points: readonly string[],
+  networks: number,
+): Promise<Verdict & { neverReached: string[] }> {
+  const ids = await layDueChanges(services, networks);
+  const env = childEnv(services.config);
+  const done = async () => (await countIn(services, ids, 'live')) === ids.length;
+  const neverReached: string[] = [];
+  const lockedOut: string[] = [];
+  for (const point of points) {
+    const server = startServerProcess(env, point);
+    await until(60, `${point} is reached or everything is done`, async () => server.isOver() || done());
+    if (!server.isOver()) {
+      neverReached.push(point);
+      server.process.kill('SIGKILL');
+    }
+    await server.ended;
+    lockedOut.push(...(await judge(services, ids)).lockedOut);
+  }
+  const last = startServerProcess(env);
+  try {
+    await until(90, 'all changes are in force', async () => last.isOver() || done());
+  } catch {
+    // The verdict names what is missing.
+  }
+  last.process.kill('SIGKILL');
+  await last.ended;
+  const after = await judge(services, ids);
+  return { lost: after.lost, lockedOut: [...lockedOut, ...after.lockedOut], neverReached };
+}
+
+/** One fault, and judged as above: also in between, when nobody may be locked out either. */
 export async function tryFault(
   services: Services,
   point: string,
   networks: number,
 ): Promise<Verdict & { fired: boolean }> {
-  const ids = await layDueChanges(services, networks);
-  const env = childEnv(services.config);
-  const first = startServerProcess(env, point);
-  await until(60, `${point} is reached or everything is done`, async () => {
-    return first.isOver() || (await countIn(services, ids, 'live')) === ids.length;
-  });
-  const fired = first.isOver();
-  if (!fired) first.process.kill('SIGKILL');
-  await first.ended;
-  const between = await judge(services, ids);
-  const second = startServerProcess(env);
-  try {
-    await until(90, `all changes are in force after ${point}`, async () => {
-      return (await countIn(services, ids, 'live')) === ids.length || second.isOver();
-    });
-  } catch {
-    // The verdict names what is missing.
-  }
-  second.process.kill('SIGKILL');
-  await second.ended;
-  const after = await judge(services, ids);
-  return { lost: after.lost, lockedOut: [...between.lockedOut, ...after.lockedOut], fired };
+  const { neverReached, ...verdict } = await tryFaults(services, [point], networks);
+  return { ...verdict, fired: neverReached.length === 0 };
 }
 
 /** The last step of all: a server ends itself while it forgets retired secrets, and the next one forgets them. */
