@@ -1,9 +1,10 @@
+import type { KeyObject } from 'node:crypto';
 import { readdir, readFile } from 'node:fs/promises';
 import { join } from 'node:path';
 import { z } from 'zod';
 import { Misconfigured, readConfig } from '../config.ts';
 import { Database } from '../db/connection.ts';
-import { type Checkpoint, checkpointKey } from '../handovers/checkpoint.ts';
+import { type Checkpoint, checkpointKey, isGenuine } from '../handovers/checkpoint.ts';
 import { verifyChain } from '../handovers/verifyChain.ts';
 
 const line = z.object({
@@ -27,6 +28,22 @@ async function outside(folder: string | null): Promise<Checkpoint[]> {
     .map((text) => line.parse(JSON.parse(text)));
 }
 
+/** Vessels whose log was signed for outside the database and that the database knows nothing of, with its length then. */
+function lostLogs(
+  { key, outside }: { key: KeyObject; outside: readonly Checkpoint[] },
+  known: ReadonlySet<string>,
+  only: string | undefined,
+): Map<string, number> {
+  const lost = new Map<string, number>();
+  for (const checkpoint of outside) {
+    const { vesselId, seq } = checkpoint;
+    if (known.has(vesselId) || (only !== undefined && only !== vesselId) || !isGenuine(key, checkpoint))
+      continue;
+    lost.set(vesselId, Math.max(seq, lost.get(vesselId) ?? 0));
+  }
+  return lost;
+}
+
 /** Checks the log of one vessel (its identifier as argument) or of all; ends with 1 where one does not hold. */
 async function verifyLog(only: string | undefined): Promise<void> {
   const config = readConfig(process.env);
@@ -47,10 +64,14 @@ async function verifyLog(only: string | undefined): Promise<void> {
         bad += 1;
         process.stdout.write(`${name} (${id}): entry ${verdict.bad.seq}: ${verdict.bad.why}\n`);
       }
+      for (const [id, entries] of lostLogs(signed, new Set(vessels.map((one) => one.id)), only)) {
+        bad += 1;
+        process.stdout.write(`${id}: the whole log is gone; ${entries} entries of it had been signed for\n`);
+      }
       process.stdout.write(
         bad === 0
           ? `${entries} entries of ${vessels.length} logs hold, compared with ${signed.outside.length} checkpoints outside the database.\n`
-          : `${bad} of ${vessels.length} logs are not what was written.\n`,
+          : `${bad === 1 ? '1 log is' : `${bad} logs are`} not what was written; ${vessels.length} were read.\n`,
       );
     });
   } finally {

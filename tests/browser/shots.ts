@@ -64,7 +64,7 @@ function personOf(people: readonly SignIn[], role: string): SignIn {
 
 const database = await temporaryDatabase();
 const running = await serve(
-  { ...process.env, DATABASE_APP_URL: database.appUrl, SMTP_URL: undefined },
+  { ...process.env, DATABASE_APP_URL: database.appUrl, SMTP_URL: undefined, CHECKPOINT_DIR: undefined },
   { log: pino({ level: 'silent' }) },
 );
 const browser = await launchBrowser();

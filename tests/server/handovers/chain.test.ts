@@ -1,5 +1,5 @@
 import { execFile } from 'node:child_process';
-import { mkdtemp, rm } from 'node:fs/promises';
+import { mkdtemp, rm, writeFile } from 'node:fs/promises';
 import os from 'node:os';
 import path from 'node:path';
 import { promisify } from 'node:util';
@@ -13,7 +13,7 @@ import {
   signCheckpoint,
 } from '../../../server/handovers/checkpoint.ts';
 import { type Verdict, verifyChain } from '../../../server/handovers/verifyChain.ts';
-import { testEnv, useApp } from '../../support/app.ts';
+import { testEnv, useApp, uuid } from '../../support/app.ts';
 import { factories } from '../../support/factories.ts';
 
 const app = useApp({ spoilsLogs: true });
@@ -216,8 +216,8 @@ describe('signed heads', () => {
       expect(await checkpointLogs(services)).toBe(0);
       expect(await verify(grown)).toMatchObject({ entries: 3, checkpoints: 1, bad: null });
 
-      const run = (): Promise<{ code: number; stdout: string }> =>
-        promisify(execFile)(process.execPath, ['--import', 'tsx', 'server/bin/verifyLog.ts', grown], {
+      const run = (vesselId = grown): Promise<{ code: number; stdout: string }> =>
+        promisify(execFile)(process.execPath, ['--import', 'tsx', 'server/bin/verifyLog.ts', vesselId], {
           env: {
             ...process.env,
             ...testEnv(app.appUrl),
@@ -230,6 +230,14 @@ describe('signed heads', () => {
         );
       // The folder holds the heads of every other vessel as well.
       expect((await run()).stdout).toMatch(/^3 entries of 1 logs hold, compared with \d+ checkpoints/);
+      // A log that is not there at all, though its head was signed for.
+      const gone = uuid();
+      const head = { vesselId: gone, seq: 7, hash: '00'.repeat(32), at: app.clock.now().toISOString() };
+      const seed = app.services.config.logSigningSeed;
+      await writeFile(path.join(folder, `${gone}.jsonl`), `${JSON.stringify(signCheckpoint(seed, head))}\n`);
+      const lost = await run(gone);
+      expect(lost.code).toBe(1);
+      expect(lost.stdout).toContain(`${gone}: the whole log is gone; 7 entries of it had been signed for`);
       await asOwner(`UPDATE log_entries SET kind = 'card.lost' WHERE vessel_id = $1 AND seq = 2`, [grown]);
       const bad = await run();
       expect(bad.code).toBe(1);
