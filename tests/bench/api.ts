@@ -14,9 +14,9 @@ import { freePorts } from '../support/programs.ts';
 import { scratchDatabase } from '../support/scratchDatabase.ts';
 import { childEnv, until } from '../support/seaTrial.ts';
 
-const ROUNDS = 7;
+const ROUNDS = 15;
 const CONNECTIONS = 20;
-const SECONDS = 4;
+const SECONDS = 2;
 const WARM_SECONDS = 3;
 /** Other vessels with guests of their own, so that an index is needed to find these. */
 const OTHERS = 500;
